@@ -1,0 +1,127 @@
+"""Every column of the top layer exchanges with air and abyss; the ledger books what happened."""
+
+import numpy as np
+from numpy.typing import NDArray
+
+from oceanbox.compiling import kernel
+from oceanbox.physics.buoyancy import buoyancy
+from oceanbox.physics.column import outcrop_share, surface_heating, transformed_thickness
+from oceanbox.physics.entrainment import diffusive_gain, mixed_layer_transport, shoaling_gain, upwelling_gain
+from oceanbox.physics.state import Constants, Forcing, Ledger
+
+__all__ = ["exchange"]
+
+Array = NDArray[np.float64]
+
+
+@kernel
+def entrain(h: Array, Mx: Array, My: Array, forcing: Forcing, constants: Constants, dt: float, ledger: Ledger, gain: Array) -> None:
+    """``gain`` = water entrained in this step, m: the sum of the closures, each booked under its name."""
+    rows, columns = h.shape
+    per_dx = 1.0 / constants.dx
+    per_dy = 1.0 / constants.dy
+    for j in range(2, rows - 2):
+        for i in range(2, columns - 2):
+            prescribed = forcing.prescribed_entrainment[j, i] * dt
+            ledger.entrainment_prescribed[j, i] += prescribed
+            gain[j, i] = prescribed
+    if constants.mixed_depth > 0.0:
+        for j in range(2, rows - 2):
+            for i in range(2, columns - 2):
+                upwelling = (Mx[j, i + 1] - Mx[j, i]) * per_dx + (My[j + 1, i] - My[j, i]) * per_dy
+                up = upwelling_gain(h[j, i], upwelling, dt, constants)
+                ledger.entrainment_upwelling[j, i] += up
+                gain[j, i] += up
+    if constants.diapycnal_diffusivity > 0.0:
+        for j in range(2, rows - 2):
+            for i in range(2, columns - 2):
+                diffused = diffusive_gain(h[j, i], dt, constants)
+                ledger.entrainment_diffusive[j, i] += diffused
+                gain[j, i] += diffused
+    if constants.shoaling_depth > 0.0:
+        for j in range(2, rows - 2):
+            for i in range(2, columns - 2):
+                kept = shoaling_gain(h[j, i], dt, constants)
+                ledger.entrainment_shoaling[j, i] += kept
+                gain[j, i] += kept
+
+
+@kernel
+def exchange(
+    h: Array,
+    heat: Array,
+    salt: Array,
+    u: Array,
+    v: Array,
+    forcing: Forcing,
+    constants: Constants,
+    wind: float,
+    dt: float,
+    ledger: Ledger,
+    Mx: Array,
+    My: Array,
+    gain: Array,
+) -> None:
+    """Entrainment, surface fluxes, transformation and outcrop of one step, applied to the top layer.
+
+        h     += w_e dt - w_d dt + outcrop
+        heat  += Int Q/(rho0 c_p) dt - outcrop (Theta)
+        salt  -= S_ref (P - E) dt + w_d Sigma dt + outcrop (Sigma)
+
+    All arrays (ny+4, nx+4), interior cells changed; ``gain`` is left holding w_e dt for the momentum equation.
+    """
+    rows, columns = h.shape
+    if constants.mixed_depth > 0.0:
+        mixed_layer_transport(h, u, v, forcing.shear_x, forcing.shear_y, wind, constants, Mx, My)
+    entrain(h, Mx, My, forcing, constants, dt, ledger, gain)
+    handing_over = dt / (constants.outcrop_time + dt)
+    for j in range(2, rows - 2):
+        for i in range(2, columns - 2):
+            h0 = h[j, i]
+            entrained = gain[j, i]
+            h1 = h0 + entrained
+            theta = heat[j, i] / h0
+            sigma = salt[j, i] / h0
+            b = buoyancy(theta, sigma, constants)
+            F = forcing.prescribed_heating[j, i]
+            heating = surface_heating(
+                h0, theta, entrained, F, forcing.restoring_velocity[j, i], forcing.target_anomaly[j, i], dt
+            )
+            prescribed = F * dt
+            if heating < 0.0:
+                # Loss fades at the outcrop, and cannot take heat that is not there: what was applied is what is booked.
+                wanted = heating
+                heating = max(heating * outcrop_share(theta, b, constants), -max(heat[j, i], 0.0))
+                prescribed *= heating / wanted
+            q1 = heat[j, i] + heating
+            freshening = forcing.freshening[j, i] * dt
+            s1 = salt[j, i] - freshening
+            destroyed = transformed_thickness(h1, theta, sigma, heat[j, i] / h1, heating, freshening, constants)
+            carried = 0.0
+            if constants.salt_carried:
+                carried = destroyed * s1 / h1
+                s1 -= carried
+            h1 -= destroyed
+            ledger.heat_prescribed[j, i] += prescribed
+            ledger.heat_restoring[j, i] += heating - prescribed
+            ledger.virtual_salt[j, i] -= freshening
+            ledger.transformation[j, i] -= destroyed
+            ledger.transformation_salt[j, i] -= carried
+            if constants.outcrop_margin > 0.0:
+                theta = q1 / h1
+                sigma = s1 / h1
+                b = buoyancy(theta, sigma, constants)
+                abyssal = 1.0 - outcrop_share(theta, b, constants)
+                if abyssal > 0.0:
+                    handed = abyssal * handing_over * max(h1 - constants.floor_depth, 0.0)
+                    # A column denser than the abyss overturns: it swaps water with it besides handing some over.
+                    swapped = abyssal * handing_over * (h1 - handed) if b < 0.0 else 0.0
+                    h1 -= handed
+                    q1 -= (handed + swapped) * theta
+                    s1 -= (handed + swapped) * sigma
+                    ledger.outcrop_volume[j, i] -= handed
+                    ledger.outcrop_heat[j, i] -= (handed + swapped) * theta
+                    ledger.outcrop_salt[j, i] -= (handed + swapped) * sigma
+            h[j, i] = h1
+            heat[j, i] = q1
+            salt[j, i] = s1
