@@ -1,0 +1,125 @@
+"""The longest stable step, from the amplification factors of the scheme on the C-grid (von Neumann analysis).
+
+For a plane wave (k_x, k_y) the grid turns derivatives into s_x = (2/dx) sin(k_x dx/2) and the Coriolis parameter into
+f cos(k_x dx/2) cos(k_y dy/2).  The largest factor over a fan of waves, from the longest to the checkerboard, must not exceed 1.
+Friction, lateral mixing and flow have limits of their own.
+"""
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from oceanbox.grid import Grid
+from oceanbox.stepping.weights import BETA, EPSILON, GAMMA
+
+__all__ = ["StepLimits", "largest_amplification", "step_limits"]
+
+# Round-off of a 9x9 eigenvalue problem with a defective neutral mode: its eigenvalues scatter by about eps**(1/3).
+NEUTRAL = 1.0 + 2e-5
+RUNGE_KUTTA_STAGES = {"runge_kutta_3": 3, "runge_kutta_4": 4}
+
+
+@dataclass(frozen=True)
+class StepLimits:
+    """Longest stable steps, s: waves with rotation; friction; lateral mixing; flow through a cell at ``flow`` m s-1."""
+
+    waves: float
+    friction: float
+    mixing: float
+    flow: float
+
+    @property
+    def smallest(self) -> float:
+        """The limit that counts, s."""
+        return min(self.waves, self.friction, self.mixing, self.flow)
+
+    @property
+    def cause(self) -> str:
+        """Which limit it is, in words."""
+        named = {
+            "gravity waves and rotation": self.waves,
+            "viscosity": self.friction,
+            "lateral mixing": self.mixing,
+            "advection": self.flow,
+        }
+        return min(named, key=lambda name: named[name])
+
+
+def _forward_backward_matrix(sx: complex, sy: complex, f: float, wave_speed: float, dt: float) -> NDArray[np.complex128]:
+    """One step acting on (eta, u, v) at n, n-1, n-2, with eta scaled so that both gradients carry c."""
+    transport = np.array([1.5 + BETA, -(0.5 + 2 * BETA), BETA])
+    pressure = np.array([0.5 + GAMMA + 2 * EPSILON, 0.5 - 2 * GAMMA - 3 * EPSILON, GAMMA, EPSILON])
+    rotation = np.array([23.0, -16.0, 5.0]) / 12.0
+    m = np.zeros((9, 9), dtype=complex)
+    eta_row = np.zeros(9, dtype=complex)
+    eta_row[0] = 1.0
+    eta_row[3:6] = -dt * wave_speed * sx * transport
+    eta_row[6:9] = -dt * wave_speed * sy * transport
+    m[0] = eta_row
+    for row, other, slope, sign in ((3, 6, sx, 1.0), (6, 3, sy, -1.0)):
+        m[row, row] = 1.0
+        m[row, other : other + 3] += sign * dt * f * rotation
+        m[row] += -dt * wave_speed * slope * pressure[0] * eta_row
+        m[row, 0:3] += -dt * wave_speed * slope * pressure[1:]
+    for first in (0, 3, 6):
+        m[first + 1, first] = 1.0
+        m[first + 2, first + 1] = 1.0
+    return m
+
+
+def _runge_kutta_factor(z: float, stages: int) -> float:
+    """|R(i z)| of an explicit method whose order equals its number of stages."""
+    return abs(sum((1j * z) ** n / math.factorial(n) for n in range(stages + 1)))
+
+
+def largest_amplification(scheme: str, grid: Grid, wave_speed: float, f: float, dt: float, waves: int = 9) -> float:
+    """Largest amplification factor a step over a fan of ``waves`` x ``waves`` plane waves up to the checkerboard."""
+    worst = 0.0
+    for px in np.linspace(0.0, math.pi / 2, waves):
+        for py in np.linspace(0.0, math.pi / 2, waves):
+            sx, sy = 2.0 / grid.dx * math.sin(px), 2.0 / grid.dy * math.sin(py)
+            rotation = f * math.cos(px) * math.cos(py)
+            if scheme in RUNGE_KUTTA_STAGES:
+                frequency = math.sqrt(rotation**2 + wave_speed**2 * (sx**2 + sy**2))
+                factor = _runge_kutta_factor(frequency * dt, RUNGE_KUTTA_STAGES[scheme])
+            else:
+                factor = float(
+                    np.abs(np.linalg.eigvals(_forward_backward_matrix(1j * sx, 1j * sy, rotation, wave_speed, dt))).max()
+                )
+            worst = max(worst, factor)
+    return worst
+
+
+def _wave_limit(scheme: str, grid: Grid, wave_speed: float, f: float) -> float:
+    """Bisection on the step to a relative width of 1e-4."""
+    gravity = 2.0 * wave_speed * math.hypot(1.0 / grid.dx, 1.0 / grid.dy)
+    longest = 3.0 / max(gravity, f, 1e-30)
+    low, high = 0.0, longest
+    while high - low > 1e-4 * high:
+        middle = 0.5 * (low + high)
+        if largest_amplification(scheme, grid, wave_speed, f, middle) <= NEUTRAL:
+            low = middle
+        else:
+            high = middle
+    return low
+
+
+def step_limits(scheme: str, grid: Grid, wave_speed: float, flow: float, viscosity: float, diffusivity: float) -> StepLimits:
+    """Longest stable steps of ``scheme`` on ``grid``.
+
+    ``wave_speed`` [m s-1] is the fastest gravity wave expected, ``flow`` [m s-1] the fastest current, ``viscosity`` and
+    ``diffusivity`` in m2 s-1.  Friction and mixing are forward in time, limit 2 on the real axis (2.51 for the three-stage
+    method, 2.78 for four); a current may cross half a cell a step, the bound under which no new extremum is made.
+    """
+    f = float(np.abs(grid.coriolis(grid.y_face)).max())
+    stiffness = 4.0 * (1.0 / grid.dx**2 + 1.0 / grid.dy**2)
+    real_axis = {"runge_kutta_3": 2.51275, "runge_kutta_4": 2.78529}.get(scheme, 2.0)
+    crossing = flow * (1.0 / grid.dx + 1.0 / grid.dy)
+    return StepLimits(
+        waves=_wave_limit(scheme, grid, wave_speed, f),
+        friction=real_axis / (viscosity * stiffness) if viscosity > 0.0 else math.inf,
+        mixing=real_axis / (diffusivity * stiffness) if diffusivity > 0.0 else math.inf,
+        flow=0.5 / crossing if crossing > 0.0 else math.inf,
+    )
