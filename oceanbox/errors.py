@@ -10,6 +10,8 @@ OceanboxError
 Anything else that escapes is a defect of the program, never of its input.
 """
 
+# ruff: noqa: N818  (the names say what happened; the base class says that it is an error)
+
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable

@@ -1,0 +1,19 @@
+"""The configuration: its schema, its loading from YAML, and its description in words."""
+
+from .identity import identity, resolved_yaml
+from .loading import LoadedConfig, Source, load, loads
+from .reference import json_schema, reference_keys, reference_text
+from .schema import Config
+
+__all__ = [
+    "Config",
+    "LoadedConfig",
+    "Source",
+    "identity",
+    "json_schema",
+    "load",
+    "loads",
+    "reference_keys",
+    "reference_text",
+    "resolved_yaml",
+]
