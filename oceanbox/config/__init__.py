@@ -1,9 +1,9 @@
 """The configuration: its schema, its loading from YAML, and its description in words."""
 
-from .identity import identity, resolved_yaml
-from .loading import LoadedConfig, Source, load, loads
-from .reference import json_schema, reference_keys, reference_text
-from .schema import Config
+from oceanbox.config.identity import identity, resolved_yaml
+from oceanbox.config.loading import LoadedConfig, Source, load, loads
+from oceanbox.config.reference import json_schema, reference_keys, reference_text
+from oceanbox.config.schema import Config
 
 __all__ = [
     "Config",

@@ -10,8 +10,8 @@ from typing import Annotated, Any, Literal, Union, get_args, get_origin
 import annotated_types
 from pydantic.fields import FieldInfo
 
-from .fields import FieldKind
-from .section import FIELD_UNIT, Section
+from oceanbox.config.fields import FieldKind
+from oceanbox.config.section import FIELD_UNIT, Section
 
 A_FIELD = "a number or a field (shape, points, file or sum)"
 _BOUNDS = (

@@ -5,9 +5,9 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any, TypeVar
 
-from ..errors import ConfigError, Fault
-from .section import Section
-from .validating import show, validate
+from oceanbox.config.section import Section
+from oceanbox.config.validating import show, validate
+from oceanbox.errors import ConfigError, Fault
 
 Changed = TypeVar("Changed", bound=Section)
 

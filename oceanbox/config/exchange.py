@@ -8,8 +8,8 @@ from typing import Annotated, Any, ClassVar, Literal
 
 from pydantic import Discriminator, Tag
 
-from .fields import FieldSpec, field
-from .section import Real, Section, choice, optional_subsection, quantity, subsection
+from oceanbox.config.fields import FieldSpec, field
+from oceanbox.config.section import Real, Section, choice, optional_subsection, quantity, subsection
 
 
 class UpwellingEntrainment(Section):

@@ -5,8 +5,8 @@ from __future__ import annotations
 from difflib import get_close_matches
 from pathlib import Path
 
-from ..errors import Fault
-from .yaml_tree import Node, read_tree
+from oceanbox.config.yaml_tree import Node, read_tree
+from oceanbox.errors import Fault
 
 
 def read_extended(path: Path, faults: list[Fault]) -> Node:

@@ -7,7 +7,7 @@ from typing import Annotated, Any, ClassVar, Literal
 
 from pydantic import Discriminator, Field, Tag
 
-from .section import FIELD_UNIT, CrossFault, Real, Section, Whole, choice, quantity, required_quantity
+from oceanbox.config.section import FIELD_UNIT, CrossFault, Real, Section, Whole, choice, quantity, required_quantity
 
 Hemispheres = Literal["both", "north", "south"]
 Latitude = Annotated[Real, Field(ge=-90.0, le=90.0)]

@@ -9,10 +9,10 @@ from typing import Any
 
 import yaml
 
-from ..errors import ConfigError, Fault
-from .loading import file_fields
-from .schema import Config
-from .yaml_tree import CoreDumper
+from oceanbox.config.loading import file_fields
+from oceanbox.config.schema import Config
+from oceanbox.config.yaml_tree import CoreDumper
+from oceanbox.errors import ConfigError, Fault
 
 _WITHOUT_EFFECT = {"name", "description"}
 

@@ -5,13 +5,13 @@ from __future__ import annotations
 from dataclasses import dataclass
 from pathlib import Path
 
-from ..errors import ConfigError, Fault
-from .extending import extended, read_extended
-from .fields import FileField
-from .schema import Config
-from .section import Section
-from .validating import validate
-from .yaml_tree import Node, plain
+from oceanbox.config.extending import extended, read_extended
+from oceanbox.config.fields import FileField
+from oceanbox.config.schema import Config
+from oceanbox.config.section import Section
+from oceanbox.config.validating import validate
+from oceanbox.config.yaml_tree import Node, plain
+from oceanbox.errors import ConfigError, Fault
 
 
 @dataclass(frozen=True)

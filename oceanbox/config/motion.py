@@ -7,7 +7,7 @@ from typing import Literal
 
 from pydantic import Field
 
-from .section import CrossFault, Real, Section, YesNo, choice, optional_subsection, quantity
+from oceanbox.config.section import CrossFault, Real, Section, YesNo, choice, optional_subsection, quantity
 
 Side = Literal["west", "east", "south", "north"]
 

@@ -8,11 +8,11 @@ from typing import Any, get_origin
 
 from pydantic.fields import FieldInfo
 
-from .allowed import Entry, allowed, entry_of, model_word, sections_in
-from .fields import FIELD_KINDS, FieldKind
-from .schema import Config
-from .section import Section
-from .validating import show
+from oceanbox.config.allowed import Entry, allowed, entry_of, model_word, sections_in
+from oceanbox.config.fields import FIELD_KINDS, FieldKind
+from oceanbox.config.schema import Config
+from oceanbox.config.section import Section
+from oceanbox.config.validating import show
 
 
 @dataclass(frozen=True)

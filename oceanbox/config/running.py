@@ -7,7 +7,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import Literal
 
-from .section import CrossFault, Real, Section, Whole, choice, quantity
+from oceanbox.config.section import CrossFault, Real, Section, Whole, choice, quantity
 
 
 class Equilibrium(Section):

@@ -7,14 +7,14 @@ from typing import Any, Self
 
 from pydantic import Field
 
-from .basin import Basin
-from .changing import with_changes
-from .exchange import Entrainment, Outcrop, Transformation
-from .motion import Mixing, Motion
-from .running import Equilibrium, Evolve, Numerics, Output
-from .section import CrossFault, Section, subsection
-from .surface import Surface
-from .water import Layer, Water
+from oceanbox.config.basin import Basin
+from oceanbox.config.changing import with_changes
+from oceanbox.config.exchange import Entrainment, Outcrop, Transformation
+from oceanbox.config.motion import Mixing, Motion
+from oceanbox.config.running import Equilibrium, Evolve, Numerics, Output
+from oceanbox.config.section import CrossFault, Section, subsection
+from oceanbox.config.surface import Surface
+from oceanbox.config.water import Layer, Water
 
 
 class Config(Section):

@@ -9,8 +9,8 @@ from typing import Annotated, Literal
 
 from pydantic import Field
 
-from .fields import FieldSpec, Gaussian, LatitudeBand, SumOfFields, TropicsToPole, field
-from .section import CrossFault, Real, Section, choice, optional_subsection, quantity, subsection
+from oceanbox.config.fields import FieldSpec, Gaussian, LatitudeBand, SumOfFields, TropicsToPole, field
+from oceanbox.config.section import CrossFault, Real, Section, choice, optional_subsection, quantity, subsection
 
 BandEdge = Annotated[Real, Field(ge=0.0, le=90.0)]
 

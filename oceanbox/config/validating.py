@@ -11,9 +11,9 @@ from typing import Any, TypeVar, get_args
 from pydantic import ValidationError
 from pydantic_core import ErrorDetails
 
-from ..errors import ConfigError, Fault
-from .allowed import Entry, allowed, entry_of, item_of, model_word, sections_in
-from .section import CROSS_CHECK, FIELD_UNIT, Section
+from oceanbox.config.allowed import Entry, allowed, entry_of, item_of, model_word, sections_in
+from oceanbox.config.section import CROSS_CHECK, FIELD_UNIT, Section
+from oceanbox.errors import ConfigError, Fault
 
 Checked = TypeVar("Checked", bound=Section)
 Path = tuple[str | int, ...]

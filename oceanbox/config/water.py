@@ -7,8 +7,8 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import Literal
 
-from .fields import FieldSpec, field
-from .section import CrossFault, Real, Section, choice, quantity
+from oceanbox.config.fields import FieldSpec, field
+from oceanbox.config.section import CrossFault, Real, Section, choice, quantity
 
 
 class Water(Section):

@@ -12,7 +12,7 @@ from typing import Any
 
 import yaml
 
-from ..errors import Fault
+from oceanbox.errors import Fault
 
 Scalar = str | int | float | bool | None
 
