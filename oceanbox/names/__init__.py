@@ -42,6 +42,7 @@ __all__ = [
     "all_names",
     "at_one_time",
     "coordinate",
+    "coordinate_names",
     "in_group",
     "lookup",
 ]
@@ -147,6 +148,11 @@ def coordinate(name: str) -> Variable:
     return _COORDINATES[name]
 
 
+def coordinate_names() -> tuple[str, ...]:
+    """Every coordinate a file may hold, their bounds left out."""
+    return tuple(_COORDINATES)
+
+
 def at_one_time(name: str) -> Variable:
     """The entry of a state field, budget term, flux or scalar as it stands in a file of snapshots: with a leading
     time dimension, and no mean over a window.
@@ -156,8 +162,6 @@ def at_one_time(name: str) -> Variable:
     base = lookup(name)
     methods = base.cell_methods or ""
     if not methods.startswith("window: mean"):
-        raise ValueError(
-            f"no snapshot of {name}: got a variable of group {base.group}; give a window mean's name"
-        )
+        raise ValueError(f"no snapshot of {name}: got a variable of group {base.group}; give a window mean's name")
     over_cells = methods.removeprefix("window: mean").strip()
     return replace(base, dims=("time", *base.dims), cell_methods=f"time: point {over_cells}".strip())

@@ -7,7 +7,6 @@ from oceanbox.names.variable import Attributes, Variable
 CALENDAR = "noleap"
 TIME_UNITS = "days since 0001-01-01 00:00:00"
 
-_TIME: Attributes = (("calendar", CALENDAR),)
 _PLANE = "distance on an idealised plane"
 
 
@@ -23,6 +22,11 @@ def _latitude(name: str, dim: str, what: str) -> Variable:
 
 def _longitude(name: str, dim: str, what: str) -> Variable:
     return Variable(name, what, "degrees_east", (dim,), "coordinate", "longitude")
+
+
+def _time(name: str, what: str, dims: tuple[str, ...], attributes: Attributes = ()) -> Variable:
+    calendar = ("calendar", CALENDAR)
+    return Variable(name, what, TIME_UNITS, dims, "coordinate", "time", attributes=(*attributes, calendar))
 
 
 COORDINATES: tuple[Variable, ...] = (
@@ -43,17 +47,9 @@ COORDINATES: tuple[Variable, ...] = (
         "model_level_number",
         attributes=(("axis", "Z"), ("positive", "down")),
     ),
-    Variable("region", "name of the latitude band", "1", ("region",), "coordinate"),
-    Variable(
-        "time",
-        "model time",
-        TIME_UNITS,
-        ("time",),
-        "coordinate",
-        "time",
-        attributes=(("axis", "T"), *_TIME),
-    ),
-    Variable(
-        "window", "middle of the averaging window", TIME_UNITS, (), "coordinate", "time", attributes=_TIME
-    ),
+    Variable("region", "name of the latitude band", "", ("region",), "coordinate"),
+    _time("time", "model time", ("time",), (("axis", "T"),)),
+    _time("window", "middle of the averaging window", ()),
+    # CF lets a scalar coordinate have bounds, but checkers refuse them, so these describe themselves.
+    _time("window_bounds", "start and end of the averaging window", ("bounds",)),
 )

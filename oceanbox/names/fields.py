@@ -63,9 +63,7 @@ STATE: tuple[Variable, ...] = (
         LAYER_CENTRE,
         sign="positive: lighter than the abyss",
     ),
-    _state(
-        "velocity_x", "eastward layer-mean velocity", "m s-1", LAYER_X_FACE, "sea_water_x_velocity", EASTWARD
-    ),
+    _state("velocity_x", "eastward layer-mean velocity", "m s-1", LAYER_X_FACE, "sea_water_x_velocity", EASTWARD),
     _state(
         "velocity_y",
         "northward layer-mean velocity",

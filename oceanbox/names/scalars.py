@@ -41,9 +41,7 @@ SCALARS: tuple[Variable, ...] = (
         "m",
         _DOWN,
     ),
-    _scalar(
-        "thermocline_depth_equator_mean", "thermocline depth on the equator, mean over longitude", "m", _DOWN
-    ),
+    _scalar("thermocline_depth_equator_mean", "thermocline depth on the equator, mean over longitude", "m", _DOWN),
     _scalar(
         "equatorial_tilt",
         "western minus eastern thermocline depth on the equator",
@@ -87,22 +85,14 @@ SCALARS: tuple[Variable, ...] = (
         attributes=DIFFERENCE,
     ),
     _scalar("tropical_heat_gain", "surface heat gain of the tropics", "W", INTO_THE_OCEAN),
-    _scalar(
-        "total_heat_gain", "surface heat flux integrated where the ocean gains heat", "W", "never negative"
-    ),
+    _scalar("total_heat_gain", "surface heat flux integrated where the ocean gains heat", "W", "never negative"),
     _scalar("total_heat_loss", "surface heat flux integrated where the ocean loses heat", "W", _LOSS),
-    _scalar(
-        "applied_high_latitude_loss", "surface heat loss poleward of the subtropics as applied", "W", _LOSS
-    ),
+    _scalar("applied_high_latitude_loss", "surface heat loss poleward of the subtropics as applied", "W", _LOSS),
     _scalar("heat_imbalance", "size of the net surface heat flux over that of its absolute value", "1"),
     _scalar("entrainment_total", "entrainment by all closures", "m3 s-1", MADE),
-    _scalar(
-        "entrainment_upwelling_total", "entrainment by upwelling through the mixed-layer base", "m3 s-1", MADE
-    ),
+    _scalar("entrainment_upwelling_total", "entrainment by upwelling through the mixed-layer base", "m3 s-1", MADE),
     _scalar("entrainment_diffusive_total", "entrainment by vertical diffusion", "m3 s-1", MADE),
-    _scalar(
-        "entrainment_shoaling_total", "entrainment that keeps a shoaling layer from vanishing", "m3 s-1", MADE
-    ),
+    _scalar("entrainment_shoaling_total", "entrainment that keeps a shoaling layer from vanishing", "m3 s-1", MADE),
     _scalar("entrainment_prescribed_total", "prescribed entrainment", "m3 s-1", MADE),
     _scalar("transformation_total", "transformation of warm water into abyssal water", "m3 s-1", DESTROYED),
     _scalar("exchange_imbalance", "size of entrainment minus transformation over entrainment", "1"),

@@ -42,6 +42,7 @@ DESTROYED = "positive: warm water is destroyed"
 class Variable:
     """What a file says about one variable.
 
+    units       '' for text
     dims        () for a single number
     sign        what a positive number means, or which sign occurs; one phrase, written into `comment`
     attributes  further CF attributes as (name, text) pairs, such as `units_metadata`
@@ -56,6 +57,18 @@ class Variable:
     sign: str | None = None
     cell_methods: str | None = None
     attributes: Attributes = ()
+
+    def cf_attributes(self) -> dict[str, str]:
+        """The attributes of this variable in a file, apart from those that depend on the file's other variables."""
+        stated = {
+            "long_name": self.long_name,
+            "standard_name": self.standard_name,
+            "units": self.units,
+            "comment": self.sign,
+            "cell_methods": self.cell_methods,
+            **dict(self.attributes),
+        }
+        return {key: text for key, text in stated.items() if text}
 
 
 def mean_over_cell_and_window(dims: tuple[str, ...]) -> str:
