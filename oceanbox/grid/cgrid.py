@@ -25,10 +25,15 @@ from oceanbox.constants import EARTH_RADIUS_M
 if TYPE_CHECKING:
     from oceanbox.config import Config
 
-__all__ = ["HALO", "Grid", "build_grid"]
+__all__ = ["HALO", "Grid", "build_grid", "to_degrees"]
 
 HALO = 2
 Array = NDArray[np.float64]
+
+
+def to_degrees(distance: Array) -> Array:
+    """Distance from the origin [m] as degrees of arc on the earth."""
+    return np.degrees(distance / EARTH_RADIUS_M)
 
 
 @dataclass(frozen=True)
@@ -72,12 +77,12 @@ class Grid:
     @property
     def latitude(self) -> Array:
         """Latitude of the centres, y/a, (ny,), degrees."""
-        return np.degrees(self.y / EARTH_RADIUS_M)
+        return to_degrees(self.y)
 
     @property
     def longitude(self) -> Array:
         """Longitude of the centres east of the western wall, x/a, (nx,), degrees."""
-        return np.degrees(self.x / EARTH_RADIUS_M)
+        return to_degrees(self.x)
 
     @property
     def cell_area(self) -> float:

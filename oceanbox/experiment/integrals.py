@@ -1,0 +1,81 @@
+"""Basin integrals of a stretch of a run, from the ledger: for the time series and for the judgement of equilibrium."""
+
+import numpy as np
+from numpy.typing import NDArray
+
+from oceanbox.equilibrium import WindowMeans
+from oceanbox.experiment.model import Model
+from oceanbox.physics.state import Ledger
+
+__all__ = ["contents", "exchange_series", "kinetic_energy", "window_means"]
+
+Array = NDArray[np.float64]
+TROPICS_DEG = 10.0
+HIGH_LATITUDES_DEG = 30.0
+
+
+def contents(model: Model) -> dict[str, float]:
+    """Volume [m3], heat content [J], salt content [kg] of the warm water and its kinetic energy [J], now."""
+    grid, water = model.grid, model.setup.water
+    return {
+        "warm_water_volume": float(model.thickness.sum()) * grid.cell_area,
+        "heat_content": float(grid.centres(model.state.heat).sum()) * grid.cell_area * water.heat,
+        "salt_content": float(grid.centres(model.state.salt).sum()) * grid.cell_area * water.salt,
+        "kinetic_energy": kinetic_energy(model),
+    }
+
+
+def kinetic_energy(model: Model) -> float:
+    """rho0 Int h (u^2 + v^2)/2 dA, J, the squares averaged from faces to centres."""
+    u2, v2 = model.velocity_x**2, model.velocity_y**2
+    mean = 0.5 * (u2[..., 1:] + u2[..., :-1] + v2[..., 1:, :] + v2[..., :-1, :])
+    return float((0.5 * model.thickness * mean).sum()) * model.grid.cell_area * model.setup.water.density
+
+
+def heating_map(model: Model, amounts: Ledger, seconds: float) -> Array:
+    """Mean surface heat flux of the stretch, (ny, nx), W m-2."""
+    total = amounts.heat_prescribed + amounts.heat_restoring
+    return model.grid.centres(total) * (model.setup.water.heat / seconds)
+
+
+def _volume_flux(model: Model, entry: Array, seconds: float) -> float:
+    return float(model.grid.centres(entry).sum()) * model.grid.cell_area / seconds
+
+
+def entrainment(model: Model, amounts: Ledger, seconds: float) -> float:
+    """W_e by all closures, m3 s-1."""
+    total = amounts.entrainment_upwelling + amounts.entrainment_diffusive
+    return _volume_flux(model, total + amounts.entrainment_shoaling + amounts.entrainment_prescribed, seconds)
+
+
+def exchange_series(model: Model, amounts: Ledger, seconds: float) -> dict[str, float]:
+    """Heat and volume exchange of the stretch which ``amounts`` books: the scalars of the time series."""
+    grid = model.grid
+    heating = heating_map(model, amounts, seconds) * grid.cell_area
+    latitude = np.abs(grid.latitude)[:, None]
+    absolute = float(np.abs(heating).sum())
+    return {
+        "tropical_heat_gain": float((heating * (latitude < TROPICS_DEG)).sum()),
+        "total_heat_gain": float(heating[heating > 0.0].sum()),
+        "total_heat_loss": float(-heating[heating < 0.0].sum()),
+        "applied_high_latitude_loss": float(-(np.minimum(heating, 0.0) * (latitude > HIGH_LATITUDES_DEG)).sum()),
+        "heat_imbalance": float(abs(heating.sum())) / absolute if absolute > 0.0 else 0.0,
+        "entrainment_total": entrainment(model, amounts, seconds),
+        "transformation_total": -_volume_flux(model, amounts.transformation, seconds),
+    }
+
+
+def window_means(model: Model, seconds: float, volume: float, heat_content: float) -> WindowMeans:
+    """What the judgement needs of the window just ended: its mean contents and what its ledger booked."""
+    grid = model.grid
+    heating = heating_map(model, model.ledger, seconds)
+    outcrop = grid.centres(model.ledger.outcrop_heat) * (model.setup.water.heat / seconds)
+    lost = model.ledger.transformation + model.ledger.outcrop_volume
+    return WindowMeans(
+        volume=volume,
+        heat_content=heat_content,
+        net_heating=float((heating + outcrop).sum()) * grid.cell_area,
+        absolute_heating=float(np.abs(heating).sum()) * grid.cell_area,
+        entrainment=entrainment(model, model.ledger, seconds),
+        destruction=-_volume_flux(model, lost, seconds),
+    )

@@ -1,0 +1,338 @@
+"""The run loop: step to the next thing that is due, do it, go on.
+
+Everything due happens at fixed model times, so a run that was cut anywhere and continued from a checkpoint does exactly what the
+uncut run did.  Checkpoints alone follow the clock on the wall, and change nothing.
+"""
+
+import json
+import math
+import time
+from collections.abc import Callable
+from dataclasses import asdict, dataclass
+from typing import Any, Protocol
+
+import numpy as np
+from numpy.typing import NDArray
+
+from oceanbox.constants import SECONDS_PER_DAY
+from oceanbox.equilibrium import Drift, Tolerances, WindowMeans, drift_between, held
+from oceanbox.errors import UnstableRun
+from oceanbox.experiment.health import describe_breakdown, is_sound
+from oceanbox.experiment.integrals import window_means
+from oceanbox.experiment.model import Model, choose_step
+from oceanbox.experiment.outcome import Ending, Outcome
+from oceanbox.experiment.plan import SECONDS_PER_YEAR, Plan
+from oceanbox.experiment.recorder import Recorder
+from oceanbox.physics.state import State
+from oceanbox.stepping.limits import step_limits
+
+__all__ = ["Observer", "Progress", "Run"]
+
+Array = NDArray[np.float64]
+# The step is shortened when the fastest wave leaves less than this margin to the limit.
+LIMIT_MARGIN = 0.95
+
+
+@dataclass(frozen=True)
+class Progress:
+    """Where a run is: model days, the last day it can reach, steps so far, the drift of the last window if any."""
+
+    days: float
+    end_days: float
+    steps: int
+    drift: Drift | None
+    heat_imbalance: float
+    note: str
+
+
+class Observer(Protocol):
+    """What the loop tells the outside and asks of it."""
+
+    def progress(self, progress: Progress) -> None:
+        """Called after every sample."""
+
+    def snapshot(self, run: "Run", number: int) -> None:
+        """Called at every snapshot time with its number."""
+
+    def checkpoint_due(self) -> bool:
+        """Whether the loop should now save a checkpoint."""
+
+    def save(self, run: "Run") -> None:
+        """Save a checkpoint; raises InterruptedRun to stop the run afterwards."""
+
+
+@dataclass
+class Progressing:
+    """Counters of a run, part of its checkpoint."""
+
+    samples: int = 0
+    points: int = 0
+    windows: int = 0
+    snapshots: int = 0
+    good_windows: int = 0
+    window_open: bool = False
+
+
+class Run:
+    """One model on its way through a plan."""
+
+    def __init__(self, model: Model, plan: Plan, observer: Observer) -> None:
+        self.model = model
+        self.plan = plan
+        self.observer = observer
+        self.recorder = Recorder(model)
+        self.counts = Progressing(window_open=plan.windows_repeat or plan.window_start() == 0.0)
+        self.previous: WindowMeans | None = None
+        self.drift: Drift | None = None
+        self.held: dict[str, bool] = {}
+        self.notes: list[str] = []
+        self._copy_good_state()
+
+    # -- the loop -----------------------------------------------------------------------------------------------------
+
+    def until_end(self) -> Outcome:
+        """Run to the end of the plan or to equilibrium.
+
+        Raises UnstableRun (the last sound state is then in ``model``) and InterruptedRun.
+        """
+        clock = self.model.clock
+        if clock.seconds == 0.0 and self.plan.snapshot < math.inf and self.counts.snapshots == 0:
+            self._take_snapshot()
+        outcome: Outcome | None = None
+        while outcome is None:
+            self._advance_to(self._next_time())
+            outcome = self._do_what_is_due()
+            self._report()
+            if outcome is None and self.observer.checkpoint_due():
+                self.observer.save(self)
+        return outcome
+
+    def _next_time(self) -> float:
+        plan, counts = self.plan, self.counts
+        due = [plan.end, (counts.samples + 1) * plan.sample, (counts.points + 1) * plan.series]
+        if plan.windows_repeat:
+            due.append((counts.windows + 1) * plan.window)
+        elif not counts.window_open:
+            due.append(plan.window_start())
+        if plan.snapshot < math.inf:
+            due.append(counts.snapshots * plan.snapshot)
+        return min(due)
+
+    def _advance_to(self, seconds: float) -> None:
+        steps = self.model.clock.steps_until(seconds)
+        if steps == 0:
+            return
+        self.model.advance(steps)
+        if not is_sound(self.model):
+            raise self._find_breakdown(steps)
+        self._keep_step_stable()
+        self._copy_good_state()
+
+    def _is_due(self, seconds: float) -> bool:
+        return self.model.clock.steps_until(seconds) == 0
+
+    def _do_what_is_due(self) -> Outcome | None:
+        plan, counts = self.plan, self.counts
+        if self._is_due((counts.samples + 1) * plan.sample):
+            counts.samples += 1
+            self.recorder.sample()
+        if self._is_due((counts.points + 1) * plan.series):
+            counts.points += 1
+            self.recorder.close_interval()
+        if plan.snapshot < math.inf and self._is_due(counts.snapshots * plan.snapshot):
+            self._take_snapshot()
+        if plan.windows_repeat and self._is_due((counts.windows + 1) * plan.window):
+            return self._end_window()
+        if not plan.windows_repeat and not counts.window_open and self._is_due(plan.window_start()):
+            counts.window_open = True
+            self.recorder.open_window()
+        if self._is_due(plan.end):
+            self._ensure_sampled()
+            days = self.model.clock.days
+            return Outcome(Ending.COMPLETED, f"ran for the {days:g} days asked for")
+        return None
+
+    def _take_snapshot(self) -> None:
+        self.observer.snapshot(self, self.counts.snapshots)
+        self.counts.snapshots += 1
+
+    def _ensure_sampled(self) -> None:
+        """A window shorter than the sample interval still needs one sample."""
+        if self.recorder.fields.count == 0:
+            self.recorder.sample()
+
+    # -- equilibrium --------------------------------------------------------------------------------------------------
+
+    def _end_window(self) -> Outcome | None:
+        plan, counts, asked = self.plan, self.counts, self.model.setup.config.equilibrium
+        counts.windows += 1
+        self._ensure_sampled()
+        means = self.recorder.scalars.mean
+        seconds = self.model.clock.seconds - self.model.opened_at
+        now = window_means(self.model, seconds, float(means["warm_water_volume"]), float(means["heat_content"]))
+        if self.previous is not None:
+            self.drift = drift_between(self.previous, now, asked.window_years)
+            tolerances = Tolerances(
+                asked.volume_drift_per_decade,
+                asked.heat_drift_per_decade,
+                asked.heat_imbalance,
+                asked.exchange_imbalance,
+            )
+            self.held = held(self.drift, tolerances)
+            counts.good_windows = counts.good_windows + 1 if all(self.held.values()) else 0
+        self.previous = now
+        years = self.model.clock.seconds / SECONDS_PER_YEAR
+        if counts.good_windows >= asked.windows_in_a_row:
+            return Outcome(
+                Ending.EQUILIBRIUM,
+                f"in equilibrium after {years:g} years, all measures held for {counts.good_windows} windows of "
+                f"{asked.window_years:g} years: {self._measures()}",
+            )
+        if self._is_due(plan.end):
+            return Outcome(Ending.NOT_IN_EQUILIBRIUM, f"not in equilibrium after {years:g} years: {self._measures()}")
+        self.recorder.open_window()
+        return None
+
+    def _measures(self) -> str:
+        if self.drift is None:
+            return "no two windows to compare"
+        words = {
+            "volume_per_decade": "volume drift per decade",
+            "heat_per_decade": "heat drift per decade",
+            "heat_imbalance": "heat imbalance",
+            "exchange_imbalance": "exchange imbalance",
+        }
+        return ", ".join(
+            f"{words[name]} {value:.2g} ({'held' if self.held[name] else 'not held'})"
+            for name, value in asdict(self.drift).items()
+        )
+
+    # -- keeping the run sound ----------------------------------------------------------------------------------------
+
+    def _copy_good_state(self) -> None:
+        model = self.model
+        self._good_state = State(*(field.copy() for field in model.state))
+        self._good_memory = tuple(field.copy() for field in model.memory)
+        self._good_clock = (model.clock.epoch, model.clock.dt, model.clock.steps, model.total_steps)
+
+    def _rewind(self) -> None:
+        model = self.model
+        for field, good in zip(model.state, self._good_state, strict=True):
+            field[...] = good
+        for field, good in zip(model.memory, self._good_memory, strict=True):
+            field[...] = good
+        model.clock.epoch, model.clock.dt, model.clock.steps, model.total_steps = self._good_clock
+
+    def _find_breakdown(self, steps: int) -> UnstableRun:
+        """Repeat the stretch that broke step by step, to name the step and the place."""
+        self._rewind()
+        for _ in range(steps):
+            self._copy_good_state()
+            self.model.advance(1)
+            if not is_sound(self.model):
+                break
+        broken = Model(self.model.setup)
+        broken.restore(self.model.arrays())
+        broken.clock, broken.total_steps = self.model.clock, self.model.total_steps
+        days = self.model.clock.days
+        self._rewind()
+        error = describe_breakdown(broken, self.model)
+        error.model_days = days
+        return error
+
+    def _keep_step_stable(self) -> None:
+        """Shorten the step, and say so, when the ocean has become faster than the step was chosen for."""
+        model, numerics = self.model, self.model.setup.config.numerics
+        if model.constants.linear_depth > 0.0:
+            return
+        speed = model.fastest_wave()
+        flow = float(np.abs(model.state.velocity_x).max() + np.abs(model.state.velocity_y).max())
+        if speed <= self._checked_speed() and flow <= self._checked_flow:
+            return
+        limits = step_limits(
+            numerics.scheme, model.grid, speed, flow, model.constants.viscosity, model.constants.diffusivity
+        )
+        self._checked = speed, flow
+        if model.clock.dt <= LIMIT_MARGIN * limits.smallest:
+            return
+        shorter = choose_step(limits.smallest, numerics.step_safety)
+        self.notes.append(
+            f"day {model.clock.days:.0f}: step shortened from {model.clock.dt:g} s to {shorter:g} s ({limits.cause})"
+        )
+        model.change_step(shorter)
+
+    _checked: tuple[float, float] = (0.0, 0.0)
+
+    def _checked_speed(self) -> float:
+        return self._checked[0] * 1.02
+
+    @property
+    def _checked_flow(self) -> float:
+        return self._checked[1] * 1.1
+
+    # -- checkpoint ---------------------------------------------------------------------------------------------------
+
+    def _report(self) -> None:
+        series = self.recorder.series.get("heat_imbalance", [math.nan])
+        self.observer.progress(
+            Progress(
+                days=self.model.clock.days,
+                end_days=self.plan.end / SECONDS_PER_DAY,
+                steps=self.model.total_steps,
+                drift=self.drift,
+                heat_imbalance=series[-1],
+                note=self.notes[-1] if self.notes else "",
+            )
+        )
+
+    def checkpoint_arrays(self) -> dict[str, Array]:
+        """All arrays that a restart needs."""
+        return self.model.arrays() | self.recorder.arrays()
+
+    def checkpoint_attributes(self) -> dict[str, str | int | float]:
+        """All numbers and texts that a restart needs; floats keep every bit."""
+        clock = self.model.clock
+        record: dict[str, Any] = {
+            "counts": asdict(self.counts),
+            "previous": asdict(self.previous) if self.previous else None,
+            "drift": asdict(self.drift) if self.drift else None,
+            "held": self.held,
+            "notes": self.notes,
+            "clock": [clock.epoch, clock.dt, clock.steps],
+            "total_steps": self.model.total_steps,
+            "opened_at": self.model.opened_at,
+            "checked": list(self._checked),
+        }
+        # json writes the shortest text that reads back as the same float.
+        return {"run": json.dumps(record)}
+
+    def restore(self, arrays: dict[str, Array], attributes: dict[str, Any]) -> None:
+        """Take over a checkpoint of the same configuration."""
+        record = json.loads(attributes["run"])
+        self.model.restore(arrays)
+        self.recorder.restore(arrays)
+        self.counts = Progressing(**record["counts"])
+        self.previous = WindowMeans(**record["previous"]) if record["previous"] else None
+        self.drift = Drift(**record["drift"]) if record["drift"] else None
+        self.held, self.notes = record["held"], record["notes"]
+        clock = self.model.clock
+        clock.epoch, clock.dt, clock.steps = record["clock"]
+        self.model.total_steps = record["total_steps"]
+        self.model.opened_at = record["opened_at"]
+        self._checked = tuple(record["checked"])
+        self._copy_good_state()
+
+
+class WallClock:
+    """Says when ``interval`` seconds have passed since the last time it said so."""
+
+    def __init__(self, interval: float, now: Callable[[], float] = time.monotonic) -> None:
+        self._interval, self._now = interval, now
+        self._last = now()
+
+    def rang(self) -> bool:
+        """Whether the interval has passed; starts the next one if so."""
+        if self._now() - self._last < self._interval:
+            return False
+        self._last = self._now()
+        return True
