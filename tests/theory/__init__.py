@@ -1,0 +1,1 @@
+"""Published solutions, as plain numpy functions, for comparison with the model; nothing here imports the model."""
