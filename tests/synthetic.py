@@ -297,8 +297,6 @@ def _series(days: Array) -> dict[str, Array]:
         "entrainment_total": (40e6, 21e6, 0.8e6),
         "transformation_total": (2e6, 20.5e6, 0.6e6),
     }
-    series = {
-        name: end + (start - end) * settling + size * eddies for name, (start, end, size) in ends.items()
-    }
+    series = {name: end + (start - end) * settling + size * eddies for name, (start, end, size) in ends.items()}
     series["heat_imbalance"] = np.abs(0.55 * settling + 0.012 * eddies)
     return {names.SERIES_PREFIX + name: values for name, values in series.items()}

@@ -74,14 +74,10 @@ def by_region(dataset: xr.Dataset) -> xr.Dataset:
     area = array_of(dataset, "cell_area")
     shares = band_shares(Geometry.of(dataset), REGION_EDGES_DEG)
     integrals = {
-        names.REGION_PREFIX + term: band_integrals(array_of(dataset, term), area, shares)
-        for term in BUDGET_TERMS
+        names.REGION_PREFIX + term: band_integrals(array_of(dataset, term), area, shares) for term in BUDGET_TERMS
     }
     return xr.Dataset(
-        {
-            name: (("region",), values, names.lookup(name).cf_attributes())
-            for name, values in integrals.items()
-        },
+        {name: (("region",), values, names.lookup(name).cf_attributes()) for name, values in integrals.items()},
         coords={"region": list(names.REGIONS)},
     )
 

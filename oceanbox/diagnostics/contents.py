@@ -49,15 +49,9 @@ def contents_of(dataset: xr.Dataset, reference: Reference) -> xr.Dataset:
     thickness = array_of(dataset, "thickness")
     area = array_of(dataset, "cell_area")
     density = reference.reference_density_kg_per_m3
-    warmth = excess_content(
-        thickness, array_of(dataset, "temperature"), reference.abyss_temperature_degC, area
-    )
-    saltiness = excess_content(
-        thickness, array_of(dataset, "salinity"), reference.abyss_salinity_g_per_kg, area
-    )
-    energy = kinetic_energy(
-        thickness, array_of(dataset, "velocity_x"), array_of(dataset, "velocity_y"), area, density
-    )
+    warmth = excess_content(thickness, array_of(dataset, "temperature"), reference.abyss_temperature_degC, area)
+    saltiness = excess_content(thickness, array_of(dataset, "salinity"), reference.abyss_salinity_g_per_kg, area)
+    energy = kinetic_energy(thickness, array_of(dataset, "velocity_x"), array_of(dataset, "velocity_y"), area, density)
     return scalars(
         {
             "warm_water_volume": float((thickness * area).sum()),

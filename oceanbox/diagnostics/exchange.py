@@ -60,9 +60,7 @@ def heat_exchange_of(dataset: xr.Dataset) -> xr.Dataset:
     The tropical gain is net. The imbalance is NaN where no heat passes the surface. Raises UnreadableResult
     if a variable is missing or not finite.
     """
-    found = heat_exchange(
-        array_of(dataset, "surface_heat_flux"), array_of(dataset, "cell_area"), Geometry.of(dataset)
-    )
+    found = heat_exchange(array_of(dataset, "surface_heat_flux"), array_of(dataset, "cell_area"), Geometry.of(dataset))
     return scalars(
         {
             "tropical_heat_gain": found.tropical_gain,

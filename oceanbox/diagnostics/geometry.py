@@ -150,8 +150,7 @@ def _faces(data: xr.Dataset | xr.DataArray, axis: str) -> Array:
         return np.asarray(data.coords[f"{axis}_face"], dtype=float)
     if axis not in data.coords:
         raise UnreadableResult(
-            f"{axis}: got no such coordinate; it must hold cell centres in m; "
-            f"add it, or {axis}_face with the faces"
+            f"{axis}: got no such coordinate; it must hold cell centres in m; add it, or {axis}_face with the faces"
         )
     centre = np.asarray(data.coords[axis], dtype=float)
     spacing = np.diff(centre)

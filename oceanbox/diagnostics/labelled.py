@@ -55,6 +55,4 @@ def scalars(values: Mapping[str, float]) -> xr.Dataset:
     """A dataset of 0-d variables, each with the attributes of the table."""
     import xarray as xr
 
-    return xr.Dataset(
-        {name: ((), float(value), names.lookup(name).cf_attributes()) for name, value in values.items()}
-    )
+    return xr.Dataset({name: ((), float(value), names.lookup(name).cf_attributes()) for name, value in values.items()})

@@ -51,15 +51,13 @@ class Probe:
     """
 
     geometry: Geometry
-    contrast_K: float = DEFAULT_CONTRAST_K
+    contrast_K: float = DEFAULT_CONTRAST_K  # noqa: N815  (the ending is the unit)
     _cells: TongueCells = field(init=False, repr=False, compare=False)
     _area: float = field(init=False, repr=False, compare=False)
 
     def __post_init__(self) -> None:
         if not self.contrast_K > 0:
-            raise ValueError(
-                f"contrast_K: got {self.contrast_K}; it must be positive; the usual choice is 2 K"
-            )
+            raise ValueError(f"contrast_K: got {self.contrast_K}; it must be positive; the usual choice is 2 K")
         object.__setattr__(self, "_cells", tongue_cells(self.geometry))
         object.__setattr__(self, "_area", float(self.geometry.cell_area.sum()))
 

@@ -1,5 +1,7 @@
 """Values that a diagnostic needs from the configuration of the run that wrote a file."""
 
+# ruff: noqa: N815  (attributes are keys of the YAML file, whose ending is the unit)
+
 from __future__ import annotations
 
 from collections.abc import Mapping

@@ -120,9 +120,7 @@ def advective_thermocline_depth(
     return float(np.sqrt(coriolis**2 * pumping * length / (beta * reduced_gravity)))
 
 
-def eastern_depth_log_law(
-    mixed_layer_depth: float, half_thickness: float, upwelled: float, destroyed: float
-) -> float:
+def eastern_depth_log_law(mixed_layer_depth: float, half_thickness: float, upwelled: float, destroyed: float) -> float:
     """Thermocline depth in the eastern equatorial basin at which entrainment meets destruction, m.
 
     H_m + l ln(W_up/W_d): of the upwelled water W_up the share exp(-(h - H_m)/l) comes from below the

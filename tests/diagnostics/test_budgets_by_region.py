@@ -20,9 +20,7 @@ def test_regions_add_up_to_the_basin_for_every_term() -> None:
         basin = means[term] * means["cell_area"]
         total = found[f"region_{term}"].sum()
         # one round-off for the sum of each row, and the rows' shares
-        assert float(total) == pytest.approx(
-            float(basin.sum()), rel=0, abs=64 * EPS * float(abs(basin).sum())
-        )
+        assert float(total) == pytest.approx(float(basin.sum()), rel=0, abs=64 * EPS * float(abs(basin).sum()))
 
 
 def test_each_region_has_the_area_between_its_latitudes() -> None:

@@ -69,9 +69,7 @@ def test_a_patch_that_does_not_touch_the_eastern_wall_has_area_but_no_reach() ->
 
 
 def test_cold_water_poleward_of_ten_degrees_is_no_cold_tongue() -> None:
-    field = patched(
-        slice(0, 16), slice(0, 32), 5.0
-    )  # 10 degrees are 1112 km; row 16 has its centre at 875 km
+    field = patched(slice(0, 16), slice(0, 32), 5.0)  # 10 degrees are 1112 km; row 16 has its centre at 875 km
     assert cold_tongue(field, CELLS, 2.0).area == 0.0
     field[16] = 5.0
     assert cold_tongue(field, CELLS, 2.0).area == NX * CELL_AREA

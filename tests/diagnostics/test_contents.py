@@ -42,6 +42,4 @@ def test_contents_follow_density_and_heat_capacity() -> None:
     double = contents_of(means, Reference(1000.0, 8000.0, 5.0, 35.0, 2.0, "walls"))
     assert float(double["heat_content"]) == pytest.approx(2 * float(base["heat_content"]), rel=1e-15)
     assert float(double["salt_content"]) == float(base["salt_content"])
-    assert float(base["warm_water_volume"]) == pytest.approx(
-        float(means["thickness"].sum()) * 5e10, rel=1e-12
-    )
+    assert float(base["warm_water_volume"]) == pytest.approx(float(means["thickness"].sum()) * 5e10, rel=1e-12)

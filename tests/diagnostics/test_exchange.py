@@ -36,11 +36,7 @@ def test_an_imbalance_of_nothing_is_not_a_number_rather_than_zero() -> None:
 
 def test_total_entrainment_is_the_sum_of_its_closures() -> None:
     found = volume_exchange_of(synthetic_means())
-    closures = [
-        name for name in found if str(name).startswith("entrainment_") and name != "entrainment_total"
-    ]
+    closures = [name for name in found if str(name).startswith("entrainment_") and name != "entrainment_total"]
     assert len(closures) == 4
-    assert float(found["entrainment_total"]) == pytest.approx(
-        sum(float(found[name]) for name in closures), rel=1e-15
-    )
+    assert float(found["entrainment_total"]) == pytest.approx(sum(float(found[name]) for name in closures), rel=1e-15)
     assert float(found["exchange_imbalance"]) == pytest.approx(0.03, rel=1e-12)

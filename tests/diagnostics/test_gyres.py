@@ -47,9 +47,7 @@ def test_a_wind_without_curl_asks_for_no_transport() -> None:
     stress_x = np.repeat(1e-8 * geometry.y[:, None], 9, axis=1)
     stress_y = np.repeat(1e-8 * geometry.x[None, :], 7, axis=0)
     psi = sverdrup_streamfunction(stress_x, stress_y, geometry, BETA, DENSITY)
-    half_column = (
-        0.5e-8 * geometry.dx[0] / (DENSITY * BETA)
-    )  # stress taken as constant beyond the last centre
+    half_column = 0.5e-8 * geometry.dx[0] / (DENSITY * BETA)  # stress taken as constant beyond the last centre
     np.testing.assert_allclose(psi[:, 1:-1], half_column, rtol=1e-9)
 
 

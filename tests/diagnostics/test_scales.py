@@ -52,9 +52,7 @@ def test_boundary_layer_widths() -> None:
 
 def test_advective_thermocline_depth() -> None:
     """f 1e-4, W 1e-6, L 5e6, beta 2e-11, g' 0.02: 353.553 m."""
-    assert scales.advective_thermocline_depth(1e-4, 1e-6, 5e6, 2e-11, 0.02) == pytest.approx(
-        353.553, rel=2e-6
-    )
+    assert scales.advective_thermocline_depth(1e-4, 1e-6, 5e6, 2e-11, 0.02) == pytest.approx(353.553, rel=2e-6)
 
 
 def test_the_log_law_makes_entrainment_equal_destruction() -> None:

@@ -62,7 +62,7 @@ def test_the_labelled_door_gives_the_bare_numbers_with_units() -> None:
     found = thermocline_depths(on_grid(depth))
     assert float(found["equatorial_tilt"]) == pytest.approx(bare.tilt, rel=1e-12)
     assert found["equatorial_tilt"].attrs["units"] == "m"
-    assert {name for name in found} == {
+    assert set(found) == {
         "thermocline_depth_equator_west",
         "thermocline_depth_equator_east",
         "thermocline_depth_equator_mean",
