@@ -6,7 +6,8 @@ from collections.abc import Mapping
 from typing import Any, TypeVar
 
 from oceanbox.config.section import Section
-from oceanbox.config.validating import show, validate
+from oceanbox.config.showing import show
+from oceanbox.config.validating import validate
 from oceanbox.errors import ConfigError, Fault
 
 Changed = TypeVar("Changed", bound=Section)

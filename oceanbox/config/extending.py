@@ -5,27 +5,35 @@ from __future__ import annotations
 from difflib import get_close_matches
 from pathlib import Path
 
-from oceanbox.config.yaml_tree import Node, read_tree
+from oceanbox.config.showing import show
+from oceanbox.config.yaml_tree import Node, plain, read_tree
 from oceanbox.errors import Fault
 
 
-def read_extended(path: Path, faults: list[Fault]) -> Node:
-    """The tree of a file merged over the files it extends; faults are appended, never raised."""
+def read_extended(path: Path, faults: list[Fault]) -> Node | None:
+    """The tree of a file merged over the files it extends; faults are appended, never raised.
+
+    None where the file cannot be read at all.
+    """
     text, problem = _read(path)
     if text is None:
         faults.append(Fault("", "", str(path), problem, _near(path)))
-        return Node({}, f"{path}:1")
+        return None
     return extended(text, str(path), path.parent, (path.resolve(),), faults)
 
 
-def extended(text: str, file: str, folder: Path | None, chain: tuple[Path, ...], faults: list[Fault]) -> Node:
+def extended(text: str, file: str, folder: Path | None, chain: tuple[Path, ...], faults: list[Fault]) -> Node | None:
     """The tree of a text merged over the files it extends; faults are appended, never raised.
+
+    None where the text cannot be read at all.
 
     file      name used in locations
     folder    where relative paths in the text start; None where they have no meaning
     chain     files being read, outermost first, so that a circle is noticed
     """
     tree = read_tree(text, file, faults)
+    if tree is None:
+        return None
     keys = tree.value if isinstance(tree.value, dict) else {}
     own = Node({key: child for key, child in keys.items() if key != "extends"}, tree.location)
     if folder is not None:
@@ -37,17 +45,19 @@ def extended(text: str, file: str, folder: Path | None, chain: tuple[Path, ...],
     if isinstance(base, Fault):
         faults.append(base)
         return own
-    return _merged_keys(base, own)
+    return own if base is None else _merged_keys(base, own)
 
 
-def _base_tree(link: Node, folder: Path | None, chain: tuple[Path, ...], faults: list[Fault]) -> Node | Fault:
+def _base_tree(link: Node, folder: Path | None, chain: tuple[Path, ...], faults: list[Fault]) -> Node | Fault | None:
     """The tree of the file that `extends` names, or why it cannot be had; faults inside it are appended."""
 
     def refusal(got: str, allowed: str, remedy: str) -> Fault:
         return Fault(link.location, "extends", got, allowed, remedy)
 
     if not isinstance(link.value, str):
-        return refusal("no text", "must be the path of a YAML file", "write a path that starts at this file's folder")
+        return refusal(
+            show(plain(link)), "must be the path of a YAML file", "write a path that starts at this file's folder"
+        )
     if folder is None:
         return refusal(repr(link.value), "this text has no folder for paths to start at", "load it from a file")
     path = folder / link.value

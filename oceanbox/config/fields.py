@@ -132,7 +132,7 @@ class FileField(FieldKind):
 
     tag: ClassVar[str] = "<file>"
     file: str = Field(
-        description="The NetCDF file; a relative path starts at the folder of this YAML file.", min_length=1
+        description="The NetCDF file, a relative path starting at the folder of the YAML file.", min_length=1
     )
     variable: str = Field(description="The name of the variable in that file.", min_length=1)
     time_index: Whole = quantity(0, "The record to take where the variable has a time dimension, from 0.", ge=0)

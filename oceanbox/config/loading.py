@@ -57,11 +57,11 @@ def loads(text: str, *, folder: Path | None = None) -> Config:
     return _checked(extended(text, "text", folder, (), faults), faults).config
 
 
-def _checked(tree: Node, faults: list[Fault]) -> LoadedConfig:
+def _checked(tree: Node | None, faults: list[Fault]) -> LoadedConfig:
     """Check a tree; `faults` are those found while reading it."""
+    if tree is None:
+        raise ConfigError(faults)
     source = Source(tree)
-    if any(not fault.location for fault in faults):
-        raise ConfigError(faults)  # there is no file at all, so there is nothing else to say
     try:
         config = validate(Config, plain(tree))
     except ConfigError as error:
@@ -72,7 +72,7 @@ def _checked(tree: Node, faults: list[Fault]) -> LoadedConfig:
             key,
             item.file,
             "there is no such file",
-            "mend the path; it starts at this file's folder",
+            "mend the path, which starts at the folder of the YAML file",
         )
         for key, item in file_fields(config)
         if not Path(item.file).is_file()

@@ -35,7 +35,7 @@ class Motion(Section):
 
     momentum_advection: YesNo = choice(True, "Whether the flow carries its own momentum.")
     linear_about_depth_m: Real | None = quantity(
-        None, "The rest depth about which all dynamics are linear; null for the full equations.", "m", gt=0.0
+        None, "The rest depth about which all dynamics are linear, or null for the full equations.", "m", gt=0.0
     )
     viscosity_m2_per_s: Real = quantity(8.0e3, "The lateral viscosity.", "m2 s-1", ge=0.0)
     viscosity_acts_on: Literal["velocity", "transport"] = choice(

@@ -12,7 +12,7 @@ from oceanbox.config.allowed import Entry, allowed, entry_of, model_word, sectio
 from oceanbox.config.fields import FIELD_KINDS, FieldKind
 from oceanbox.config.schema import Config
 from oceanbox.config.section import Section
-from oceanbox.config.validating import show
+from oceanbox.config.showing import show
 
 
 @dataclass(frozen=True)

@@ -52,7 +52,7 @@ class Evolve(Section):
 
     duration_days: Real = quantity(3650.0, "The length of the run.", "days", gt=0.0)
     snapshot_interval_days: Real | None = quantity(
-        None, "The time between stored snapshots of the fields; null for none.", "days", gt=0.0
+        None, "The time between stored snapshots of the fields, or null for none.", "days", gt=0.0
     )
 
     def cross_faults(self) -> Iterator[CrossFault]:
@@ -95,7 +95,7 @@ class Numerics(Section):
     """Time stepping and the discretisation that can be chosen."""
 
     scheme: Literal["forward_backward", "runge_kutta_3"] = choice("forward_backward", "The time-stepping scheme.")
-    step_s: Real | None = quantity(None, "The time step; null to take it from the stability limits.", "s", gt=0.0)
+    step_s: Real | None = quantity(None, "The time step, or null to take it from the stability limits.", "s", gt=0.0)
     step_safety: Real = quantity(0.7, "The share of the stability limit that is used.", "1", gt=0.0, le=1.0)
     deepest_layer_m: Real = quantity(600.0, "The thickness whose wave speed bounds the time step.", "m", gt=0.0)
     thickness_flux: Literal["centred", "upwind_biased"] = choice(

@@ -21,7 +21,7 @@ class Config(Section):
     """One experiment, complete: every key has a value."""
 
     name: str = Field(
-        description="The name of the experiment, which names its results: a-z, 0-9, '_' and '-'.",
+        description="The name of the experiment and of its results, of a-z, 0-9, '_' and '-'.",
         pattern=r"^[a-z0-9_-]+$",
     )
     description: str = Field("", description="The experiment in one sentence.")
@@ -29,7 +29,7 @@ class Config(Section):
     water: Water = subsection(Water, "The equation of state and the abyss.")
     layers: tuple[Layer, ...] = Field(
         default_factory=lambda: (Layer(),),
-        description="The moving layers from the top down; exactly one for now.",
+        description="The moving layers from the top down, exactly one for now.",
         min_length=1,
         max_length=1,
     )

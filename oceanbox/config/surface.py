@@ -51,13 +51,13 @@ class LossBand(LatitudeBand):
 
     peak_W_per_m2: Real | None = quantity(
         None,
-        "The loss in the middle of the band, a positive number; null when total_PW is given.",
+        "The loss in the middle of the band, a positive number, null when total_PW is given.",
         "W m-2",
         ge=0.0,
     )
     total_PW: Real | None = quantity(
         None,
-        "The loss summed over the band, a positive number; null when peak_W_per_m2 is given.",
+        "The loss summed over the band, a positive number, null when peak_W_per_m2 is given.",
         "PW",
         ge=0.0,
     )

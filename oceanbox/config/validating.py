@@ -13,6 +13,7 @@ from pydantic_core import ErrorDetails
 
 from oceanbox.config.allowed import Entry, allowed, entry_of, item_of, model_word, sections_in
 from oceanbox.config.section import CROSS_CHECK, FIELD_UNIT, Section
+from oceanbox.config.showing import show
 from oceanbox.errors import ConfigError, Fault
 
 Checked = TypeVar("Checked", bound=Section)
@@ -37,21 +38,6 @@ def validate(model: type[Checked], data: Any) -> Checked:
 def dotted(path: Path) -> str:
     """A path as the key users write: ('layers', 0, 'x') is 'layers.0.x'."""
     return ".".join(str(part) for part in path)
-
-
-def show(value: Any) -> str:
-    """A value as it would stand in YAML, cut where it is long."""
-    if value is None:
-        return "null"
-    if isinstance(value, bool):
-        return "true" if value else "false"
-    if isinstance(value, dict):
-        text = "{" + ", ".join(f"{key}: {show(item)}" for key, item in value.items()) + "}"
-    elif isinstance(value, list | tuple):
-        text = "[" + ", ".join(show(item) for item in value) + "]"
-    else:
-        text = repr(value)
-    return text if len(text) <= 60 else text[:57] + "..."
 
 
 def _faults(model: type[Section], data: Any, details: ErrorDetails) -> Iterator[Fault]:
@@ -125,20 +111,17 @@ def _unknown_key(path: Path, owner: type[Section] | None, value: Any) -> Fault:
 
 def _unknown_kind(path: Path, entry: Entry, value: Any) -> Fault:
     """A mapping that names no kind, or one that does not exist."""
-    words = [model_word(model) for model in sections_in(entry.annotation)]
-    picking = next((key for key in _PICKING_KEYS if isinstance(value, dict) and key in value), None)
-    if picking is None:
-        return Fault("", dotted(path), show(value), f"must be {allowed(entry)}", f"kinds are {', '.join(words)}")
-    word = value[picking]
+    models = sections_in(entry.annotation)
+    picking_key = next(key for key in _PICKING_KEYS for model in models if key in model.model_fields)
+    words = [model_word(model) for model in models if picking_key in model.model_fields]
+    choices = " | ".join(words)
+    if not isinstance(value, dict) or picking_key not in value:
+        remedy = f"say which with {picking_key}: {choices}"
+        return Fault("", dotted(path), show(value), f"must be {allowed(entry)}", remedy)
+    word = value[picking_key]
     close = get_close_matches(str(word), words, n=1, cutoff=0.6)
-    shapes = [word for word in words if word not in ("points", "file", "sum")]
-    return Fault(
-        "",
-        dotted((*path, picking)),
-        show(word),
-        f"must be one of {' | '.join(shapes)}",
-        f"did you mean '{close[0]}'?" if close else "choose one of these",
-    )
+    remedy = f"did you mean '{close[0]}'?" if close else "choose one of these"
+    return Fault("", dotted((*path, picking_key)), show(word), f"must be one of {choices}", remedy)
 
 
 def _wrong_value(path: Path, entry: Entry | None, value: Any) -> Fault:
@@ -155,6 +138,9 @@ def _remedy(entry: Entry, value: Any) -> str:
     text = allowed(entry)
     if value is None and text.startswith("a mapping"):
         return "remove the line to keep the defaults, or give the keys"
+    models = sections_in(entry.annotation)
+    if len(models) == 1 and text.startswith("a mapping"):
+        return f"give its keys on lines below: {', '.join(models[0].model_fields)}"
     if text.startswith("one of"):
         words = [str(word) for word in _literal_words(entry.annotation)]
         close = get_close_matches(str(value), words, n=1, cutoff=0.6)

@@ -67,26 +67,31 @@ def plain(node: Node) -> Any:
     return node.value
 
 
-def read_tree(text: str, file: str, faults: list[Fault]) -> Node:
+def read_tree(text: str, file: str, faults: list[Fault]) -> Node | None:
     """Parse one YAML document; what is wrong with it as YAML is appended to `faults`.
 
     file    name used in locations
 
-    Returns the tree as far as it could be read; an empty mapping where it could not.
+    Returns the tree, without the entries that are at fault; None where the text cannot be read at all.
     """
     empty = Node({}, f"{file}:1")
     try:
         root = yaml.compose(text, Loader=CoreLoader)
     except yaml.YAMLError as error:
         faults.append(_syntax_fault(error, file))
-        return empty
+        return None
+    except RecursionError:
+        faults.append(
+            Fault(empty.location, "", "nesting without end", "a configuration is a few levels deep", "flatten it")
+        )
+        return None
     if root is None:
         return empty
     if not isinstance(root, yaml.MappingNode):
         faults.append(
             Fault(empty.location, "", "no mapping", "a configuration is a mapping", "write 'key: value' lines")
         )
-        return empty
+        return None
     return _Reader(file, faults).node(root, (), empty.location)
 
 
@@ -98,9 +103,9 @@ def _syntax_fault(error: yaml.YAMLError, file: str) -> Fault:
     return Fault(
         f"{file}:{line}",
         "",
-        f"{problem}{column}",
+        f"a syntax error: {problem.removeprefix('but ')}{column}",
         "the file must be one YAML document",
-        "mend this line or the one before it: indentation, brackets, quotes, a missing ': '",
+        "mend this line or the one before it: indentation by spaces, brackets, quotes, a missing ': '",
     )
 
 
@@ -139,13 +144,12 @@ class _Reader:
         for key_node, value_node in source.value:
             key = self._scalar(key_node, path) if isinstance(key_node, yaml.ScalarNode) else None
             if not isinstance(key, str):
-                self._fault(
-                    key_node,
-                    path,
-                    f"the key {key_node.value!r:.40}",
-                    "keys must be text",
-                    "rename or quote this key",
+                got = (
+                    f"the key {key_node.value!r:.40}"
+                    if isinstance(key_node, yaml.ScalarNode)
+                    else "a list or mapping as key"
                 )
+                self._fault(key_node, path, got, "keys must be text", "rename or quote this key")
                 continue
             if key in children:
                 self._fault(

@@ -14,13 +14,7 @@ Meaning = Literal["latitude", "longitude", "y", "x", "time", "other"]
 # Coordinates are often stored in 4 bytes: a relative 6e-8 of 90 degrees is 1e-4 of a 0.05 degree spacing.
 _EDGE_TOLERANCE = 1.0e-3
 
-_STANDARD_NAMES: dict[str, Meaning] = {
-    "latitude": "latitude",
-    "longitude": "longitude",
-    "projection_y_coordinate": "y",
-    "projection_x_coordinate": "x",
-    "time": "time",
-}
+_DEGREES = {"", "degree", "degrees"}  # what a coordinate may say whose standard name tells the direction
 _NORTH = {"degrees_north", "degree_north", "degrees_N", "degree_N", "degreesN", "degreeN"}
 _EAST = {"degrees_east", "degree_east", "degrees_E", "degree_E", "degreesE", "degreeE"}
 _METRES = {"m": 1.0, "metre": 1.0, "metres": 1.0, "meter": 1.0, "meters": 1.0}
@@ -55,17 +49,18 @@ def axis_meaning(name: str, attributes: dict[str, Any]) -> Meaning:
     """
     units = str(attributes.get("units", "")).strip()
     standard = str(attributes.get("standard_name", ""))
-    if standard in _STANDARD_NAMES:
-        return _STANDARD_NAMES[standard]
-    if units in _NORTH:
-        return "latitude"
-    if units in _EAST:
-        return "longitude"
-    if " since " in units or name == "time" or attributes.get("axis") == "T":
+    letter = str(attributes.get("axis", "")) or name
+    if standard == "time" or " since " in units or letter in ("T", "time"):
         return "time"
-    letter = str(attributes.get("axis", "")).lower() or name.lower()
-    if units in _METRES and letter in ("x", "y"):
-        return "x" if letter == "x" else "y"
+    if units in _NORTH or (standard == "latitude" and units in _DEGREES):
+        return "latitude"
+    if units in _EAST or (standard == "longitude" and units in _DEGREES):
+        return "longitude"
+    if units in _METRES:
+        if standard == "projection_y_coordinate" or letter in ("Y", "y"):
+            return "y"
+        if standard == "projection_x_coordinate" or letter in ("X", "x"):
+            return "x"
     return "other"
 
 
