@@ -53,8 +53,9 @@ class Moments:
                 self.squares[name] = np.zeros_like(now)
                 continue
             departure = now - self.mean[name]
-            self.mean[name] = self.mean[name] + departure / self.count
-            self.squares[name] = self.squares[name] + departure * (now - self.mean[name])
+            # asarray: numpy turns the sum of 0-d arrays into a bare number.
+            self.mean[name] = np.asarray(self.mean[name] + departure / self.count)
+            self.squares[name] = np.asarray(self.squares[name] + departure * (now - self.mean[name]))
 
     def deviation(self, name: str) -> Array:
         """Standard deviation over the samples (divisor: their number)."""

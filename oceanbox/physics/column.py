@@ -8,7 +8,7 @@ books are exact whatever the step.
 import math
 
 from oceanbox.compiling import kernel
-from oceanbox.physics.buoyancy import buoyancy, thermal_expansion
+from oceanbox.physics.buoyancy import thermal_expansion
 from oceanbox.physics.state import Constants
 
 __all__ = ["outcrop_share", "surface_heating", "transformed_thickness"]
@@ -31,18 +31,20 @@ def mean_of_dilution(x: float) -> float:
 
 
 @kernel
-def surface_heating(h: float, theta: float, entrained: float, prescribed: float, restoring: float, target: float, dt: float) -> float:
+def surface_heating(
+    h: float, per_h: float, theta: float, entrained: float, prescribed: float, restoring: float, target: float, dt: float
+) -> float:
     """Heat the surface gives the column in one step, K m: Int Q/(rho0 c_p) dt.
 
     The column obeys h_t = w, (h Theta)_t = F + k (Theta* - Theta), with w = ``entrained``/dt, F = ``prescribed`` and
-    k = ``restoring`` frozen, hence h Theta_t = F + k Theta* - (w + k) Theta, whose solution is
+    k = ``restoring`` frozen (``per_h`` is 1/h), hence h Theta_t = F + k Theta* - (w + k) Theta, whose solution is
 
         Theta(dt) - Theta = [F + k Theta* - (w + k) Theta] G (1 - e^-z)/z,  G = ln(1 + w dt/h)/w,  z = (w + k) G.
 
     A slab and an upwelling column are exact at any step, and Theta never passes its equilibrium.
     """
     w = entrained / dt
-    dilution = dt / h * mean_of_dilution(entrained / h)
+    dilution = dt * per_h * mean_of_dilution(entrained * per_h)
     z = (w + restoring) * dilution
     change = (prescribed + restoring * target - (w + restoring) * theta) * dilution * mean_of_decay(z)
     return (h + entrained) * change + entrained * theta
@@ -63,23 +65,23 @@ def outcrop_share(theta: float, b: float, constants: Constants) -> float:
 
 
 @kernel
-def transformed_thickness(h: float, theta: float, sigma: float, diluted: float, heating: float, freshening: float, constants: Constants) -> float:
+def transformed_thickness(
+    h: float, theta: float, b: float, heat: float, heating: float, freshening: float, constants: Constants
+) -> float:
     """Volume turned into abyssal water in one step, m: w_d dt = -epsilon B dt/b where the surface loses buoyancy B.
 
-    B dt = g (alpha ``heating`` + beta_S ``freshening``) (Walin 1982, Tellus 34, 187, extended to density).  ``h``,
-    ``diluted`` are thickness and Theta after entrainment; alpha and b those of the water before the step.  Limited so that
+    B dt = g (alpha ``heating`` + beta_S ``freshening``) (Walin 1982, Tellus 34, 187, extended to density).  ``h`` is the
+    thickness after entrainment and ``heat`` what it holds, K m; ``theta`` and ``b`` are those before the step; ``heating``
+    is negative.  Limited so that
 
       (i)  h stays above the floor,
       (ii) the heat needed to make abyssal water of it, Theta w_d dt, is at most what the air took.
     """
     loss = constants.gravity * (thermal_expansion(theta, constants) * heating + constants.contraction * freshening)
-    if loss >= 0.0 or heating >= 0.0 or constants.efficiency == 0.0:
-        return 0.0
-    b = buoyancy(theta, sigma, constants)
-    if b <= 0.0 or theta <= 0.0:
+    if loss >= 0.0 or b <= 0.0 or heat <= 0.0 or constants.efficiency == 0.0:
         return 0.0
     efficiency = constants.efficiency
     if constants.efficiency_scale < math.inf:
         efficiency *= math.exp(-theta / constants.efficiency_scale)
-    thickness = min(-efficiency * loss / b, -heating / diluted)
+    thickness = min(-efficiency * loss / b, -heating * h / heat)
     return max(min(thickness, h - constants.floor_depth), 0.0)

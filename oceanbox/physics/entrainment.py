@@ -17,7 +17,17 @@ Array = NDArray[np.float64]
 
 
 @kernel
-def mixed_layer_transport(h: Array, u: Array, v: Array, shear_x: Array, shear_y: Array, wind: float, constants: Constants, Mx: Array, My: Array) -> None:
+def mixed_layer_transport(
+    h: Array,
+    u: Array,
+    v: Array,
+    shear_x: Array,
+    shear_y: Array,
+    wind: float,
+    constants: Constants,
+    Mx: Array,
+    My: Array,
+) -> None:
     """Transport of the surface mixed layer, M = H_m u + (H_m - H_m^2/h) u_s, m2 s-1, on x faces (Mx) and y faces (My).
 
     The mixed layer is never deeper than the layer: where h < H_m it is the whole layer and has no shear of its own.

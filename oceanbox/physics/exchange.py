@@ -15,7 +15,9 @@ Array = NDArray[np.float64]
 
 
 @kernel
-def entrain(h: Array, Mx: Array, My: Array, forcing: Forcing, constants: Constants, dt: float, ledger: Ledger, gain: Array) -> None:
+def entrain(
+    h: Array, Mx: Array, My: Array, forcing: Forcing, constants: Constants, dt: float, ledger: Ledger, gain: Array
+) -> None:
     """``gain`` = water entrained in this step, m: the sum of the closures, each booked under its name."""
     rows, columns = h.shape
     per_dx = 1.0 / constants.dx
@@ -75,53 +77,55 @@ def exchange(
         mixed_layer_transport(h, u, v, forcing.shear_x, forcing.shear_y, wind, constants, Mx, My)
     entrain(h, Mx, My, forcing, constants, dt, ledger, gain)
     handing_over = dt / (constants.outcrop_time + dt)
+    outcrop_buoyancy = constants.gravity * constants.expansion_abyss * constants.outcrop_margin
     for j in range(2, rows - 2):
         for i in range(2, columns - 2):
             h0 = h[j, i]
-            entrained = gain[j, i]
-            h1 = h0 + entrained
-            theta = heat[j, i] / h0
-            sigma = salt[j, i] / h0
+            per_h = 1.0 / h0
+            h1 = h0 + gain[j, i]
+            theta = heat[j, i] * per_h
+            sigma = salt[j, i] * per_h
             b = buoyancy(theta, sigma, constants)
             F = forcing.prescribed_heating[j, i]
             heating = surface_heating(
-                h0, theta, entrained, F, forcing.restoring_velocity[j, i], forcing.target_anomaly[j, i], dt
+                h0, per_h, theta, gain[j, i], F, forcing.restoring_velocity[j, i], forcing.target_anomaly[j, i], dt
             )
             prescribed = F * dt
+            freshening = forcing.freshening[j, i] * dt
+            s1 = salt[j, i] - freshening
+            destroyed = 0.0
+            carried = 0.0
             if heating < 0.0:
                 # Loss fades at the outcrop, and cannot take heat that is not there: what was applied is what is booked.
                 wanted = heating
                 heating = max(heating * outcrop_share(theta, b, constants), -max(heat[j, i], 0.0))
                 prescribed *= heating / wanted
+                destroyed = transformed_thickness(h1, theta, b, heat[j, i], heating, freshening, constants)
+                if constants.salt_carried:
+                    carried = destroyed * s1 / h1
+                    s1 -= carried
             q1 = heat[j, i] + heating
-            freshening = forcing.freshening[j, i] * dt
-            s1 = salt[j, i] - freshening
-            destroyed = transformed_thickness(h1, theta, sigma, heat[j, i] / h1, heating, freshening, constants)
-            carried = 0.0
-            if constants.salt_carried:
-                carried = destroyed * s1 / h1
-                s1 -= carried
             h1 -= destroyed
             ledger.heat_prescribed[j, i] += prescribed
             ledger.heat_restoring[j, i] += heating - prescribed
             ledger.virtual_salt[j, i] -= freshening
             ledger.transformation[j, i] -= destroyed
             ledger.transformation_salt[j, i] -= carried
-            if constants.outcrop_margin > 0.0:
-                theta = q1 / h1
-                sigma = s1 / h1
-                b = buoyancy(theta, sigma, constants)
-                abyssal = 1.0 - outcrop_share(theta, b, constants)
-                if abyssal > 0.0:
-                    handed = abyssal * handing_over * max(h1 - constants.floor_depth, 0.0)
-                    # A column denser than the abyss overturns: it swaps water with it besides handing some over.
-                    swapped = abyssal * handing_over * (h1 - handed) if b < 0.0 else 0.0
-                    h1 -= handed
-                    q1 -= (handed + swapped) * theta
-                    s1 -= (handed + swapped) * sigma
-                    ledger.outcrop_volume[j, i] -= handed
-                    ledger.outcrop_heat[j, i] -= (handed + swapped) * theta
-                    ledger.outcrop_salt[j, i] -= (handed + swapped) * sigma
+            per_h = 1.0 / h1
+            theta = q1 * per_h
+            sigma = s1 * per_h
+            b = buoyancy(theta, sigma, constants)
+            if theta < constants.outcrop_margin or b < outcrop_buoyancy:
+                given = (1.0 - outcrop_share(theta, b, constants)) * handing_over
+                handed = given * max(h1 - constants.floor_depth, 0.0)
+                # A column denser than the abyss overturns: it swaps water with it besides handing some over.
+                swapped = given * (h1 - handed) if b < 0.0 else 0.0
+                h1 -= handed
+                q1 -= (handed + swapped) * theta
+                s1 -= (handed + swapped) * sigma
+                ledger.outcrop_volume[j, i] -= handed
+                ledger.outcrop_heat[j, i] -= (handed + swapped) * theta
+                ledger.outcrop_salt[j, i] -= (handed + swapped) * sigma
             h[j, i] = h1
             heat[j, i] = q1
             salt[j, i] = s1

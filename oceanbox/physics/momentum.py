@@ -37,7 +37,17 @@ def kinetic_energy(u: Array, v: Array, K: Array) -> None:
 
 @kernel
 def rotation(
-    h: Array, u: Array, v: Array, U: Array, V: Array, f: Array, constants: Constants, q: Array, K: Array, du: Array, dv: Array
+    h: Array,
+    u: Array,
+    v: Array,
+    U: Array,
+    V: Array,
+    f: Array,
+    constants: Constants,
+    q: Array,
+    K: Array,
+    du: Array,
+    dv: Array,
 ) -> None:
     """Vorticity flux and Bernoulli gradient, or the planetary part alone.
 
