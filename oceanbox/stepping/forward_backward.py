@@ -146,7 +146,19 @@ def advance_forward_backward(
             book(ledger.volume_x[k], ledger.volume_y[k], fx, fy, dt)
             transport_step(h[k], fx, fy, dt, constants)
         exchange(
-            h[0], heat[0], salt[0], u[0], v[0], forcing, constants, wind, dt, ledger, work.mixed_x, work.mixed_y, work.gain[0]
+            h[0],
+            heat[0],
+            salt[0],
+            u[0],
+            v[0],
+            forcing,
+            constants,
+            wind,
+            dt,
+            ledger,
+            work.mixed_x,
+            work.mixed_y,
+            work.gain[0],
         )
         for k in range(layers):
             fill_centre_edges(h[k], periodic)

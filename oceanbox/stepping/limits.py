@@ -47,7 +47,9 @@ class StepLimits:
         return min(named, key=lambda name: named[name])
 
 
-def _forward_backward_matrix(sx: complex, sy: complex, f: float, wave_speed: float, dt: float) -> NDArray[np.complex128]:
+def _forward_backward_matrix(
+    sx: complex, sy: complex, f: float, wave_speed: float, dt: float
+) -> NDArray[np.complex128]:
     """One step acting on (eta, u, v) at n, n-1, n-2, with eta scaled so that both gradients carry c."""
     transport = np.array([1.5 + BETA, -(0.5 + 2 * BETA), BETA])
     pressure = np.array([0.5 + GAMMA + 2 * EPSILON, 0.5 - 2 * GAMMA - 3 * EPSILON, GAMMA, EPSILON])
@@ -86,7 +88,9 @@ def largest_amplification(scheme: str, grid: Grid, wave_speed: float, f: float, 
                 factor = _runge_kutta_factor(frequency * dt, RUNGE_KUTTA_STAGES[scheme])
             else:
                 factor = float(
-                    np.abs(np.linalg.eigvals(_forward_backward_matrix(1j * sx, 1j * sy, rotation, wave_speed, dt))).max()
+                    np.abs(
+                        np.linalg.eigvals(_forward_backward_matrix(1j * sx, 1j * sy, rotation, wave_speed, dt))
+                    ).max()
                 )
             worst = max(worst, factor)
     return worst
@@ -106,7 +110,9 @@ def _wave_limit(scheme: str, grid: Grid, wave_speed: float, f: float) -> float:
     return low
 
 
-def step_limits(scheme: str, grid: Grid, wave_speed: float, flow: float, viscosity: float, diffusivity: float) -> StepLimits:
+def step_limits(
+    scheme: str, grid: Grid, wave_speed: float, flow: float, viscosity: float, diffusivity: float
+) -> StepLimits:
     """Longest stable steps of ``scheme`` on ``grid``.
 
     ``wave_speed`` [m s-1] is the fastest gravity wave expected, ``flow`` [m s-1] the fastest current, ``viscosity`` and

@@ -115,7 +115,17 @@ def tendency(
         fx, fy = work.flux_x[k], work.flux_y[k]
         volume_transport(h[k], u[k], v[k], constants, fx, fy)
         rotation(
-            h[k], u[k], v[k], fx, fy, forcing.coriolis, constants, work.vorticity, work.kinetic, work.force_x[k], work.force_y[k]
+            h[k],
+            u[k],
+            v[k],
+            fx,
+            fy,
+            forcing.coriolis,
+            constants,
+            work.vorticity,
+            work.kinetic,
+            work.force_x[k],
+            work.force_y[k],
         )
         du[k] += work.force_x[k]
         dv[k] += work.force_y[k]
