@@ -24,7 +24,7 @@ class Config(Section):
         description="The name of the experiment and of its results, of a-z, 0-9, '_' and '-'.",
         pattern=r"^[a-z0-9_-]+$",
     )
-    description: str = Field("", description="The experiment in one sentence.")
+    description: str = Field(default="", description="The experiment in one sentence.")
     basin: Basin = subsection(Basin, "The basin.")
     water: Water = subsection(Water, "The equation of state and the abyss.")
     layers: tuple[Layer, ...] = Field(
@@ -43,8 +43,8 @@ class Config(Section):
     surface: Surface = subsection(Surface, "The surface fluxes.")
     equilibrium: Equilibrium = subsection(Equilibrium, "The search for equilibrium.")
     evolve: Evolve = subsection(Evolve, "A run of fixed length.")
-    output: Output = subsection(Output, "What is recorded.")
-    numerics: Numerics = subsection(Numerics, "Time stepping and discretisation.")
+    output: Output = subsection(Output, "What a run records.")
+    numerics: Numerics = subsection(Numerics, "The time stepping and discretisation.")
 
     def cross_faults(self) -> Iterator[CrossFault]:
         """Rules that need more than one section."""

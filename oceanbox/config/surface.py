@@ -101,7 +101,7 @@ class FreshWater(Section):
         "basin, or take it out of a band.",
     )
     balance_band_deg: tuple[BandEdge, BandEdge] = Field(
-        (10.0, 30.0),
+        default=(10.0, 30.0),
         description="The two distances from the equator between which balance: band puts the compensation.",
         json_schema_extra={"unit": "degree"},
     )

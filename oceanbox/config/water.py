@@ -17,7 +17,7 @@ class Water(Section):
     The quadratic coefficients are the least-squares line through the surface thermal expansion of TEOS-10 at 35 g/kg
     and conservative temperatures from 0 to 30 degC (IOC, SCOR and IAPSO 2010, Manual and Guides 56; the 75-term
     polynomial of Roquet et al. 2015, Ocean Modelling 90, 29-43). Largest error of the thermal expansion: 1.6e-5 K-1,
-    at 0 degC, and 1.2e-5 K-1 above 2 degC; of the buoyancy over an abyss of 5 degC: 8.1e-4 m s-2, at 23 degC.
+    at 0 degC, and 1.2e-5 K-1 above 2 degC; of the buoyancy over an abyss of 5 degC: 7.9e-4 m s-2, at 23 degC.
     """
 
     equation_of_state: Literal["linear", "quadratic"] = choice(
@@ -29,7 +29,7 @@ class Water(Section):
         2.0e-4, "The thermal expansion of the linear equation of state.", "K-1", gt=0.0
     )
     thermal_expansion_at_0degC_per_K: Real = quantity(
-        6.85e-5, "The thermal expansion at 0 degC in the quadratic equation of state.", "K-1"
+        6.86e-5, "The thermal expansion at 0 degC in the quadratic equation of state.", "K-1"
     )
     thermal_expansion_slope_per_K2: Real = quantity(
         9.23e-6,
