@@ -11,8 +11,8 @@ import xarray as xr
 
 from oceanbox.config import Config
 from oceanbox.config import load as load_config
-from oceanbox.errors import InterruptedRun, OceanboxError, UnstableRun
-from oceanbox.experiment.assembly import assemble_setup
+from oceanbox.errors import ConfigError, Fault, InterruptedRun, OceanboxError, UnstableRun
+from oceanbox.experiment.assembly import Setup, assemble_setup
 from oceanbox.experiment.consistency import require_consistent
 from oceanbox.experiment.model import Model
 from oceanbox.experiment.outcome import Ending, Outcome
@@ -24,7 +24,7 @@ from oceanbox.output.checkpoint import load_checkpoint
 from oceanbox.output.files import part_of, read_dataset, write_dataset
 from oceanbox.output.snapshots import Snapshots
 
-__all__ = ["Finished", "default_folder", "equilibrate", "evolve", "silent"]
+__all__ = ["Checked", "Finished", "check", "default_folder", "equilibrate", "evolve", "silent"]
 
 CHECKPOINT_SECONDS = 30.0
 SNAPSHOT_FIELDS = ("thickness", "temperature", "salinity", "velocity_x", "velocity_y")
@@ -37,6 +37,26 @@ class Finished(NamedTuple):
     outcome: Outcome
     path: Path
     found: bool
+
+
+class Checked(NamedTuple):
+    """A configuration that can be run, and what is unwise about it."""
+
+    setup: Setup
+    warnings: tuple[Fault, ...]
+
+
+def check(config: Config | Path | str) -> Checked:
+    """Assemble a configuration, or the file of one, and examine it.  Raises ConfigError with every fault found."""
+    if isinstance(config, Config):
+        setup = assemble_setup(config)
+        return Checked(setup, require_consistent(setup))
+    loaded = load_config(Path(config))
+    try:
+        setup = assemble_setup(loaded.config)
+    except ConfigError as error:
+        raise error.located(loaded.source.locate) from None
+    return Checked(setup, require_consistent(setup, loaded.source.locate))
 
 
 def silent(progress: Progress) -> None:
@@ -143,12 +163,12 @@ def _run(
     start: Path | None,
     report: Callable[[Progress], None],
 ) -> Finished:
-    config = config if isinstance(config, Config) else load_config(Path(config)).config
-    require_consistent(config)
+    checked = check(config)
+    config = checked.setup.config
     store = Store(Path(into) if into is not None else default_folder(config), Purpose.of(command, config, start))
     if store.finished():
         return _already_finished(store)
-    model = Model(assemble_setup(config))
+    model = Model(checked.setup)
     keeper = _Keeper(store, report)
     store.prepare(config)
     if start is not None:

@@ -1,0 +1,65 @@
+"""What a run will cost, from timing a few steps of the very setup; kept per machine beside the compiled code."""
+
+import json
+import time
+from pathlib import Path
+
+from oceanbox.compiling import CACHE_FOLDER
+from oceanbox.experiment.assembly import Setup
+from oceanbox.experiment.model import Model
+
+__all__ = ["seconds_per_step"]
+
+# Timing goes on until this much processor time is spent, s.
+TIMED_SECONDS = 0.5
+FIRST_STEPS = 200
+
+
+def _calibration_file() -> Path:
+    return CACHE_FOLDER / "calibration.json"
+
+
+def _known() -> dict[str, float]:
+    try:
+        return dict(json.loads(_calibration_file().read_text(encoding="utf-8")))
+    except (OSError, ValueError):
+        return {}
+
+
+def _measure(setup: Setup) -> float:
+    """Best time of several stretches: other work on the machine can only slow a stretch down."""
+    model = Model(setup)
+    # The first steps from rest are slow out of proportion: the first waves spread numbers too small for full speed.
+    model.advance(FIRST_STEPS)
+    best, spent, steps = float("inf"), 0.0, 10
+    while spent < TIMED_SECONDS:
+        start = time.perf_counter()
+        model.advance(steps)
+        took = time.perf_counter() - start
+        best = min(best, took / steps)
+        spent += took
+        steps = max(steps, int(0.05 * TIMED_SECONDS / best) + 1)
+    return best
+
+
+def seconds_per_step(setup: Setup) -> float:
+    """Wall time of one step of ``setup`` on this machine, s; measured once for each grid and set of terms."""
+    grid, constants = setup.grid, setup.constants
+    terms = [
+        constants.momentum_advection,
+        constants.upwind_thickness,
+        constants.viscosity > 0.0,
+        constants.diffusivity > 0.0,
+        constants.mixed_depth > 0.0,
+        constants.efficiency_scale,
+        setup.config.numerics.scheme,
+    ]
+    key = f"{setup.initial.thickness.shape[0]}x{grid.ny}x{grid.nx} {terms}"
+    known = _known()
+    if key not in known:
+        known[key] = _measure(setup)
+        try:
+            _calibration_file().write_text(json.dumps(known, indent=1), encoding="utf-8")
+        except OSError:
+            pass  # a calibration that cannot be kept is measured again next time
+    return known[key]
