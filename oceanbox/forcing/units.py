@@ -13,7 +13,7 @@ from oceanbox.constants import (
 
 # kind -> unit -> (scale, offset): value in the kind's base unit = scale * value + offset
 _TABLE: dict[str, dict[str, tuple[float, float]]] = {
-    "stress": {"N m-2": (1.0, 0.0), "Pa": (1.0, 0.0), "dyn cm-2": (0.1, 0.0)},
+    "stress": {"N m-2": (1.0, 0.0), "Pa": (1.0, 0.0), "dyne cm-2": (0.1, 0.0)},
     "heat flux": {"W m-2": (1.0, 0.0), "J m-2 s-1": (1.0, 0.0)},
     "heat flux per kelvin": {"W m-2 K-1": (1.0, 0.0), "W m-2 degC-1": (1.0, 0.0)},
     "temperature": {"degC": (1.0, CELSIUS_ZERO_K), "K": (1.0, 0.0)},
@@ -39,7 +39,8 @@ _SPELLINGS = {
     "pascals": "Pa",
     "watt": "W",
     "watts": "W",
-    "dyne": "dyn",
+    "dyn": "dyne",
+    "dynes": "dyne",
     "celsius": "degC",
     "degree_C": "degC",
     "degrees_C": "degC",
