@@ -31,7 +31,8 @@ class DiffusiveEntrainment(Section):
 class ShoalingEntrainment(Section):
     """Entrainment that keeps a thin layer from vanishing."""
 
-    minimum_thickness_m: Real = quantity(20.0, "The thickness below which this entrainment sets in.", "m", gt=0.0)
+    minimum_thickness_m: Real = quantity(
+        50.0, "The thickness below which this entrainment sets in.", "m", gt=0.0)
     time_days: Real = quantity(1.0, "The time scale of that entrainment.", "days", gt=0.0)
 
 
@@ -87,7 +88,7 @@ class Transformation(Section):
     efficiency: Efficiency = subsection(
         ConstantEfficiency, "The share of the buoyancy loss that destroys warm water rather than cooling it."
     )
-    floor_thickness_m: Real = quantity(20.0, "The thickness below which nothing is destroyed.", "m", gt=0.0)
+    floor_thickness_m: Real = quantity(50.0, "The thickness below which nothing is destroyed.", "m", gt=0.0)
     salt: Literal["carried", "left_behind"] = choice(
         "carried", "Whether destroyed water carries its salinity anomaly into the abyss or leaves it behind."
     )
@@ -97,7 +98,7 @@ class Outcrop(Section):
     """What happens where the warm layer has become as dense as the abyss."""
 
     margin_K: Real = quantity(
-        0.5, "The temperature excess over the abyss below which the layer counts as outcropping.", "K", gt=0.0
+        2.0, "The temperature excess over the abyss below which the layer counts as outcropping.", "K", gt=0.0
     )
     time_days: Real = quantity(
         10.0, "The time in which an outcropping layer hands its excess volume to the abyss.", "days", gt=0.0

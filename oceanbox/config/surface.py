@@ -9,7 +9,7 @@ from typing import Annotated, Literal
 
 from pydantic import Field
 
-from oceanbox.config.fields import FieldSpec, Gaussian, LatitudeBand, SumOfFields, TropicsToPole, field
+from oceanbox.config.fields import Band, FieldSpec, Gaussian, LatitudeBand, SumOfFields, TropicsToPole, field
 from oceanbox.config.section import CrossFault, Real, Section, choice, optional_subsection, quantity, subsection
 
 BandEdge = Annotated[Real, Field(ge=0.0, le=90.0)]
@@ -21,8 +21,8 @@ def _default_target() -> TropicsToPole:
 
 def _default_zonal_stress() -> SumOfFields:
     trades = Gaussian(peak=-0.06, centre_deg=0.0, width_deg=18.0)
-    westerlies = [Gaussian(peak=0.08, centre_deg=centre, width_deg=12.0) for centre in (-40.0, 40.0)]
-    return SumOfFields(sum=(trades, *westerlies))
+    westerlies = Band(peak=0.08, from_deg=25.0, to_deg=45.0)
+    return SumOfFields(sum=(trades, westerlies))
 
 
 class Restoring(Section):
