@@ -47,10 +47,12 @@ def eastern_wall_height(y: ArrayLike, count: int) -> Array:
 
     The sum tends to the constant sqrt(2), slowly and with alternating signs; see eastern_wall_height_limit.
     """
-    total = np.exp(-0.5 * np.asarray(y, dtype=float) ** 2)
-    for order in range(1, 2 * count, 2):
-        total = total + eastern_wall_rossby_height(y, order)
-    return total
+    n = 2.0 * np.arange(count) + 1.0
+    amplitudes = eastern_wall_rossby_amplitudes(count) / np.sqrt(8.0)
+    even = hermite_functions(2 * count + 1, y)[::2]  # psi_0, psi_2, ..., of which wave n uses psi_(n-1) and psi_(n+1)
+    rossby = np.tensordot(amplitudes / np.sqrt(n), even[:-1], axes=1)
+    rossby += np.tensordot(amplitudes / np.sqrt(n + 1.0), even[1:], axes=1)
+    return np.asarray((0.5 * even[0] + rossby) / (0.5 * np.pi**-0.25))
 
 
 def eastern_wall_height_limit() -> float:

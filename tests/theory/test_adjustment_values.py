@@ -59,6 +59,9 @@ def test_highest_rossby_frequency_is_the_top_of_the_dispersion_curve() -> None:
     assert rossby_wave_frequency(-1e-3 / radius, 0.0, beta, radius) / (-1e-3 / radius) == pytest.approx(
         long_rossby_wave_speed(beta, radius), rel=1.1e-6
     )  # short by (k Ld)^2
+    # At k = -1/Ld, l = 2/Ld the bracket is 6/Ld^2, a third of the frequency at l = 0.
+    oblique = rossby_wave_frequency(-1.0 / radius, 2.0 / radius, beta, radius)
+    assert oblique == pytest.approx(highest_rossby_frequency(beta, radius) / 3.0, rel=1e-14)
 
 
 # From memory; f = 2 Omega sin(latitude).
@@ -119,6 +122,12 @@ def test_finite_step() -> None:
     assert rounds_to(step.velocity, "-0.414214")
     around = adjusted_finite_step_depth(step.interface + np.array([-1e-6, 1e-6]), 100.0, 50.0, 0.02, 1e-4)
     assert around == pytest.approx(step.depth, rel=1e-10)
+    # One deformation radius of its own side away, each side has 1/e of its departure left.
+    radii = np.sqrt(0.02 * np.array([100.0, 50.0])) / 1e-4
+    x = step.interface + np.array([-1.0, 1.0]) * radii
+    away = adjusted_finite_step_depth(x, 100.0, 50.0, 0.02, 1e-4)
+    expected = [100.0 - (100.0 - step.depth) / np.e, 50.0 + (step.depth - 50.0) / np.e]
+    assert away == pytest.approx(expected, rel=1e-13)
 
 
 @pytest.mark.parametrize("right", [50.0, 10.0, 1.0])

@@ -113,6 +113,7 @@ def test_transformation_in_density_classes() -> None:
     assert rounds_to(volume / SVERDRUP, "24.4074")
     salty = surface_density_flux(0.0, 0.0, 3991.868, 1e-8, 7.5e-4, 35.0, 1000.0)
     assert salty == pytest.approx(2.625e-7, rel=1e-14)
+    assert surface_density_flux(0.0, 0.0, 3991.868, 1e-8, 7.5e-4, 35.0) == pytest.approx(1.025 * salty, rel=1e-14)
 
 
 def test_steady_states_of_the_two_boxes() -> None:
@@ -130,6 +131,23 @@ def test_steady_states_of_the_two_boxes() -> None:
         assert rounds_to(state.temperature, temperature)
         assert (state.growth_rate < 0) is stable
         assert 0.2 * state.flow == pytest.approx(2.0 * state.salinity - state.temperature, abs=1e-13)
+
+
+def test_growth_rate_is_that_of_the_linearised_boxes() -> None:
+    """Jacobian by central differences of 1e-6, exact to 1e-9 since the tendency is quadratic but for round-off."""
+    ratio, delta, resistance = 2.0, 1.0 / 6.0, 0.2
+
+    def tendency(state: np.ndarray) -> np.ndarray:
+        y, x = state
+        flow = abs(-y + ratio * x) / resistance
+        return np.array([1.0 - y - flow * y, delta * (1.0 - x) - flow * x])
+
+    for state in steady_states(ratio, delta, resistance):
+        place = np.array([state.temperature, state.salinity])
+        assert np.abs(tendency(place)).max() < 1e-13
+        steps = 1e-6 * np.eye(2)
+        jacobian = np.column_stack([(tendency(place + s) - tendency(place - s)) / 2e-6 for s in steps])
+        assert state.growth_rate == pytest.approx(np.linalg.eigvals(jacobian).real.max(), abs=1e-8)
 
 
 def test_folds_of_the_two_boxes() -> None:

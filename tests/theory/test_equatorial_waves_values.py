@@ -61,6 +61,9 @@ def test_kelvin_wave_of_5000_km() -> None:
     assert rounds_to(omega, "3.14159e-6")
     assert rounds_to(2.0 * np.pi / omega / DAY, "23.1481")
     assert rounds_to(15e6 / C / DAY, "69.4444")
+    wave = kelvin_structure(np.array([0.0, 1.0, -2.0]) * equatorial_radius(C, BETA), C, BETA, DEPTH)
+    assert wave.u == pytest.approx(np.exp([0.0, -0.5, -2.0]), rel=1e-14)
+    assert wave.h == pytest.approx(wave.u * DEPTH / C, rel=1e-14)
 
 
 # Matsuno 1966 (from memory): wavelength 5000 km.

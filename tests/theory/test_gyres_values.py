@@ -190,6 +190,8 @@ def test_munk_gyre_of_a_closed_basin(side: Side, viscosity: float, psi: str, x: 
     largest, place = MunkGyre(BASIN, viscosity, side).maximum()
     assert rounds_to(largest / SVERDRUP, psi)
     assert rounds_to(place, x)
+    rows = MunkGyre(BASIN, viscosity, side).streamfunction(place, np.array([0.0, 0.5e6, 1.5e6]))
+    assert rows == pytest.approx([0.0, 0.5 * largest, largest], rel=1e-13)
 
 
 @pytest.mark.parametrize(("side", "order"), [("no_slip", 1), ("free_slip", 2)])
