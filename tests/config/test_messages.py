@@ -86,6 +86,14 @@ CASES: dict[str, tuple[str, list[str]]] = {
         "name: a\nbasin:\n  cells_x: 60.5\n",
         ["text:3: basin.cells_x: got 60.5; must be a whole number >= 4; give the number of cells from west to east"],
     ),
+    "a whole number in quotes, and yes for one": (
+        "name: a\nequilibrium:\n  windows_in_a_row: true\nbasin:\n  cells_x: '60'\n",
+        [
+            "text:3: equilibrium.windows_in_a_row: got true; must be a whole number >= 1; "
+            "give the number of windows in a row for which all this must hold",
+            "text:5: basin.cells_x: got '60'; must be a whole number >= 4; write the bare number, 60",
+        ],
+    ),
     "infinity": (
         "name: a\nbasin:\n  north_km: .inf\n",
         [
@@ -211,9 +219,9 @@ CASES: dict[str, tuple[str, list[str]]] = {
         ],
     ),
     "a tropical plateau beyond the polar latitude": (
-        TEMPERATURE + "{shape: tropics_to_pole, tropical: 1, polar: 2, flat_to_deg: 50}\n",
+        TEMPERATURE + "{shape: tropics_to_pole, tropical: 1, polar: 2, flat_to_deg: 50, pole_deg: 45}\n",
         [
-            "text:3: layers.0.initial_temperature_degC.pole_deg: got 45 with flat_to_deg 50; "
+            "text:4: layers.0.initial_temperature_degC.pole_deg: got 45 with flat_to_deg 50; "
             "must be more than flat_to_deg; raise pole_deg or lower flat_to_deg"
         ],
     ),
@@ -316,7 +324,7 @@ CASES: dict[str, tuple[str, list[str]]] = {
         ],
     ),
     "a start deeper than the deepest layer": (
-        "name: a\nlayers: [{initial_thickness_m: 700}]\n",
+        "name: a\nlayers: [{initial_thickness_m: 700}]\nnumerics: {deepest_layer_m: 600}\n",
         [
             "text:2: layers.0.initial_thickness_m: got 700 with numerics.deepest_layer_m 600; "
             "must be at most numerics.deepest_layer_m, which bounds the time step; "
@@ -333,7 +341,7 @@ CASES: dict[str, tuple[str, list[str]]] = {
         ],
     ),
     "a search shorter than its windows": (
-        "name: a\nequilibrium: {window_years: 150}\n",
+        "name: a\nequilibrium: {window_years: 150, windows_in_a_row: 2, longest_years: 200}\n",
         [
             "text:2: equilibrium.longest_years: got 200; must hold 2 windows of 150 years: >= 300; "
             "raise longest_years, or lower window_years or windows_in_a_row"
@@ -347,17 +355,18 @@ CASES: dict[str, tuple[str, list[str]]] = {
         ],
     ),
     "samples rarer than the series": (
-        "name: a\noutput:\n  sample_interval_days: 60\n",
+        "name: a\noutput:\n  sample_interval_days: 60\n  series_interval_days: 30\n",
         [
             "text:3: output.sample_interval_days: got 60; must be at most series_interval_days, 30; "
             "sample more often or lengthen series_interval_days"
         ],
     ),
     "water that sinks when warmed": (
-        "name: a\nwater:\n  thermal_expansion_at_0degC_per_K: -1.0e-4\n",
+        "name: a\nwater:\n  thermal_expansion_at_0degC_per_K: -1.0e-4\n"
+        "  thermal_expansion_slope_per_K2: 1.0e-5\n  abyss_temperature_degC: 5\n",
         [
             "text:3: water.thermal_expansion_at_0degC_per_K: "
-            "got -0.0001, hence -5.385e-05 K-1 at the abyss's 5 degC; "
+            "got -0.0001, hence -5e-05 K-1 at the abyss's 5 degC; "
             "thermal expansion must be > 0 at the temperature of the abyss; raise this value or abyss_temperature_degC"
         ],
     ),

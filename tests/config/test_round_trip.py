@@ -7,7 +7,7 @@ from typing import Annotated, Any, Literal, Union, get_args, get_origin
 import annotated_types
 import pytest
 import yaml
-from hypothesis import given, settings
+from hypothesis import example, given, settings
 from hypothesis import strategies as st
 from pydantic import ValidationError
 from pydantic.fields import FieldInfo
@@ -93,6 +93,8 @@ def sections(model: type[Section]) -> st.SearchStrategy[dict[str, Any]]:
 
 
 @settings(max_examples=150, deadline=None)
+@example({"name": "1e3", "description": "null"})
+@example({"name": "0x1f", "description": "on"})
 @given(sections(config.Config))
 def test_a_configuration_survives_being_written_and_read(data: dict[str, Any]) -> None:
     written = config.Config.model_validate(data)

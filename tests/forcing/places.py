@@ -35,8 +35,8 @@ class Places:
 def centres(nx: int = 12, ny: int = 30, south_km: float = -4000.0, north_km: float = 5000.0) -> Places:
     """Cell centres of a basin 3000 km wide."""
     dy = (north_km - south_km) / ny * 1.0e3
-    y = south_km * 1.0e3 + (np.arange(ny) + 0.5) * dy
-    return Places(y, (np.arange(nx) + 0.5) * 3.0e6 / nx, (south_km * 1.0e3, north_km * 1.0e3))
+    y = south_km * 1.0e3 + dy * np.linspace(0.5, ny - 0.5, ny)
+    return Places(y, 3.0e6 / nx * np.linspace(0.5, nx - 0.5, nx), (south_km * 1.0e3, north_km * 1.0e3))
 
 
 def areas(places: Places) -> Array:

@@ -5,7 +5,17 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from oceanbox.config.fields import Band, Cosine, FieldKind, Gaussian, Linear, Points, SumOfFields, TropicsToPole
+from oceanbox.config.fields import (
+    Band,
+    Cosine,
+    FieldKind,
+    FieldSpec,
+    Gaussian,
+    Linear,
+    Points,
+    SumOfFields,
+    TropicsToPole,
+)
 from oceanbox.errors import ConfigError
 from oceanbox.forcing import require_above, require_at_least
 from tests.forcing.places import Places, centres
@@ -68,9 +78,13 @@ def test_points_are_joined_by_lines_and_constant_beyond_the_ends() -> None:
 
 @given(st.lists(st.floats(-1.0e3, 1.0e3), min_size=1, max_size=4), st.floats(-80.0, 80.0))
 def test_a_sum_is_the_sum_of_its_parts(numbers: list[float], latitude: float) -> None:
-    parts = (*numbers, Gaussian(peak=2.0, width_deg=10.0), SumOfFields(sum=(1.0, Linear(value_at_origin=1.0))))
-    alone = sum(at(part, latitude)[0] for part in parts)
-    size = sum(abs(at(part, latitude)[0]) for part in parts)
+    parts: tuple[FieldSpec, ...] = (
+        *numbers,
+        Gaussian(peak=2.0, width_deg=10.0),
+        SumOfFields(sum=(1.0, Linear(value_at_origin=1.0))),
+    )
+    values = [at(part, latitude)[0] for part in parts]
+    alone, size = sum(values), sum(abs(value) for value in values)
     assert at(SumOfFields(sum=parts), latitude)[0] == pytest.approx(alone, abs=len(parts) * np.finfo(float).eps * size)
 
 
@@ -94,6 +108,7 @@ def test_a_map_with_a_forbidden_value_is_refused_with_its_place() -> None:
     values[0, 3] = -1.0
     with pytest.raises(ConfigError, match="got -1 in row 0, column 3 of the grid; must be >= 0 m everywhere"):
         require_at_least(values, 0.0, "m", "k")
+    values = np.ones((3, 4))
     values[1, 1] = np.nan
     with pytest.raises(ConfigError, match="got nan in row 1, column 1"):
         require_at_least(values, 0.0, "m", "k")

@@ -7,6 +7,7 @@ from typing import Any
 import netCDF4
 import numpy as np
 import pytest
+from numpy.typing import NDArray
 
 from oceanbox.config.fields import FileField, SumOfFields
 from oceanbox.errors import ConfigError
@@ -30,7 +31,7 @@ ROUND_OFF = 20 * float(np.finfo(float).eps)
 
 def write(
     path: Path,
-    axes: dict[str, tuple[Array, dict[str, str]]],
+    axes: dict[str, tuple[NDArray[Any], dict[str, str]]],
     values: Array,
     units: str | None = "N m-2",
     **attributes: Any,
@@ -100,9 +101,9 @@ def uneven_spacing(path: Path) -> Path:
 
 
 def four_byte_axes_with_standard_names(path: Path) -> Path:
-    axes = {
-        "j": (np.float32(LATITUDE), {"standard_name": "latitude"}),
-        "i": (np.float32(LONGITUDE), {"standard_name": "longitude"}),
+    axes: dict[str, tuple[NDArray[Any], dict[str, str]]] = {
+        "j": (LATITUDE.astype(np.float32), {"standard_name": "latitude"}),
+        "i": (LONGITUDE.astype(np.float32), {"standard_name": "longitude"}),
     }
     return write(path, axes, plane(LATITUDE, LONGITUDE))
 
