@@ -85,6 +85,11 @@ def through_the_seam(path: Path) -> Path:
     return write(path, degrees(LATITUDE, longitude), plane(LATITUDE, longitude))
 
 
+def seam_in_the_basin(path: Path) -> Path:
+    longitude = np.mod(np.arange(20.0, 380.0, 5.0), 360.0)  # the globe from 20 round to 15
+    return write(path, degrees(LATITUDE, longitude), plane(LATITUDE, longitude))
+
+
 def one_turn_away(path: Path) -> Path:
     longitude = np.arange(360.0, 400.0, 4.0)
     return write(path, degrees(LATITUDE, longitude), plane(LATITUDE, longitude))
@@ -137,6 +142,7 @@ LAYOUTS = [
     falling_longitude,
     from_the_date_line,
     through_the_seam,
+    seam_in_the_basin,
     one_turn_away,
     longitude_first,
     uneven_spacing,

@@ -49,7 +49,8 @@ def test_celsius_is_known_by_its_names(spelling: str) -> None:
     assert conversion(spelling, "K") == (1.0, 273.15)
 
 
-def test_two_slashes_divide_twice() -> None:
+def test_a_slash_divides_by_the_next_factor_alone() -> None:
+    assert canonical("W/m2 K-1") == canonical("W m-2 K-1")
     assert canonical("W/m2/K") == canonical("W m-2 K-1")
     assert conversion("mm/day", "m/s") == conversion("mm day-1", "m s-1")
 
