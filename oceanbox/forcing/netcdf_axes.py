@@ -87,7 +87,7 @@ def rising(axis: Axis, values: Array, dimension: int) -> tuple[Axis, Array]:
 
 
 def closed_round_the_globe(axis: Axis, values: Array) -> tuple[Axis, Array]:
-    """A rising longitude that goes all the way round, its last column repeated before the first and the reverse.
+    """A rising longitude that goes all the way round, its last column repeated a turn before the first.
 
     Other axes come back as they are. Longitude is the last dimension of `values`.
     """
@@ -96,8 +96,17 @@ def closed_round_the_globe(axis: Axis, values: Array) -> tuple[Axis, Array]:
     spacing = float(np.max(np.diff(longitude)))
     if axis.meaning != "longitude" or gap > spacing * (1.0 + _EDGE_TOLERANCE) or gap <= 0.0:
         return axis, values
-    wide = np.concatenate([[longitude[-1] - 360.0], longitude, [longitude[0] + 360.0]])
-    return Axis(axis.name, axis.meaning, wide), np.concatenate([values[..., -1:], values, values[..., :1]], axis=-1)
+    closed = np.concatenate([[longitude[-1] - 360.0], longitude])
+    return Axis(axis.name, axis.meaning, closed), np.concatenate([values[..., -1:], values], axis=-1)
+
+
+def _reach(axis: Axis) -> tuple[float, float]:
+    """The outer edges of the outermost cells of a rising axis, degrees or m; the ends of one that closes on itself."""
+    values = axis.values
+    if axis.meaning == "longitude" and values[-1] - values[0] >= 360.0 * (1.0 - 1.0e-9):  # but for round-off
+        return float(values[0]), float(values[0]) + 360.0
+    first, last = 0.5 * (values[1] - values[0]), 0.5 * (values[-1] - values[-2])
+    return float(values[0] - first * (1.0 + _EDGE_TOLERANCE)), float(values[-1] + last * (1.0 + _EDGE_TOLERANCE))
 
 
 def places_on(axis: Axis, wanted: Array) -> Array:
@@ -107,9 +116,7 @@ def places_on(axis: Axis, wanted: Array) -> Array:
     Longitudes are moved by whole turns. Raises AxisError where a point lies outside the cells.
     """
     values = axis.values
-    first, last = 0.5 * (values[1] - values[0]), 0.5 * (values[-1] - values[-2])
-    low = values[0] - first * (1.0 + _EDGE_TOLERANCE)
-    high = values[-1] + last * (1.0 + _EDGE_TOLERANCE)
+    low, high = _reach(axis)
     places = low + np.mod(wanted - low, 360.0) if axis.meaning == "longitude" else wanted
     outside = (places < low) | (places > high)
     if np.any(outside):
