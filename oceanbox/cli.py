@@ -63,7 +63,11 @@ def _parser() -> argparse.ArgumentParser:
     added.add_argument("config", metavar="CONFIG", type=Path, help=config_help)
     added.add_argument("--into", metavar="DIR", type=Path, help="folder of the run (default: results/<name>)")
     added.add_argument(
-        "--from", dest="start", metavar="STATE", type=Path, help="state.nc of another run of the same grid to start from"
+        "--from",
+        dest="start",
+        metavar="STATE",
+        type=Path,
+        help="state.nc of another run of the same grid to start from",
     )
 
     added = command("figures", _figures, "figures of a result, from its file alone")

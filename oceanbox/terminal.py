@@ -25,7 +25,11 @@ def tell(line: str) -> None:
 
 
 def _state_words(progress: "Progress") -> str:
-    words = f"heat imbalance {100.0 * progress.heat_imbalance:.1f} %" if progress.heat_imbalance == progress.heat_imbalance else ""
+    words = (
+        f"heat imbalance {100.0 * progress.heat_imbalance:.1f} %"
+        if progress.heat_imbalance == progress.heat_imbalance
+        else ""
+    )
     drift = progress.drift
     if drift is not None:
         words += (

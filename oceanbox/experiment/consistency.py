@@ -217,7 +217,11 @@ def linear_dynamics(setup: Setup, scales: Scales) -> Iterator[Finding]:
     present = [name for name, section in switched_on.items() if section is not None]
     if present:
         yield Finding(
-            True, key, value, f"linear dynamics exchange nothing, so {', '.join(present)} must be null", "set them to null"
+            True,
+            key,
+            value,
+            f"linear dynamics exchange nothing, so {', '.join(present)} must be null",
+            "set them to null",
         )
 
 
@@ -239,9 +243,7 @@ def examine(setup: Setup, locate: Callable[[str], str] = lambda key: "") -> Find
     found = [finding for rule in RULES for finding in rule(setup, scales)]
 
     def as_faults(refused: bool) -> tuple[Fault, ...]:
-        return tuple(
-            Fault(locate(f.key), f.key, f.value, f.allowed, f.remedy) for f in found if f.refused is refused
-        )
+        return tuple(Fault(locate(f.key), f.key, f.value, f.allowed, f.remedy) for f in found if f.refused is refused)
 
     return Findings(as_faults(True), as_faults(False))
 
