@@ -31,8 +31,7 @@ class DiffusiveEntrainment(Section):
 class ShoalingEntrainment(Section):
     """Entrainment that keeps a thin layer from vanishing."""
 
-    minimum_thickness_m: Real = quantity(
-        50.0, "The thickness below which this entrainment sets in.", "m", gt=0.0)
+    minimum_thickness_m: Real = quantity(50.0, "The thickness below which this entrainment sets in.", "m", gt=0.0)
     time_days: Real = quantity(1.0, "The time scale of that entrainment.", "days", gt=0.0)
 
 

@@ -76,6 +76,13 @@ def expansion_at_abyss(config: Config) -> tuple[float, float]:
     return water.thermal_expansion_at_0degC_per_K + slope * water.abyss_temperature_degC, slope
 
 
+def _salty(config: Config) -> bool:
+    """Whether any salinity can ever differ from the abyss's."""
+    abyss = config.water.abyss_salinity_g_per_kg
+    fresh = config.surface.fresh_water is not None
+    return fresh or any(layer.initial_salinity_g_per_kg != abyss for layer in config.layers)
+
+
 def _constants(config: Config, grid: Grid) -> Constants:
     expansion, slope = expansion_at_abyss(config)
     motion, entrainment, outcrop = config.motion, config.entrainment, config.outcrop
@@ -98,7 +105,8 @@ def _constants(config: Config, grid: Grid) -> Constants:
         dy=grid.dy,
         periodic_x=grid.periodic_x,
         tangential_sign=-1.0 if grid.no_slip else 1.0,
-        momentum_advection=motion.momentum_advection,
+        momentum_advection=motion.momentum_advection and motion.linear_about_depth_m is None,
+        salty=_salty(config),
         linear_depth=motion.linear_about_depth_m or 0.0,
         upwind_thickness=config.numerics.thickness_flux == "upwind_biased",
         centred_tracers=False,

@@ -86,6 +86,8 @@ class Run:
         self.drift: Drift | None = None
         self.held: dict[str, bool] = {}
         self.notes: list[str] = []
+        # Wave speed and crossing rate for which the step was last checked.
+        self._checked: tuple[float, float] = (0.0, 0.0)
         self._copy_good_state()
 
     # -- the loop -----------------------------------------------------------------------------------------------------
@@ -245,14 +247,13 @@ class Run:
         model, numerics = self.model, self.model.setup.config.numerics
         if model.constants.linear_depth > 0.0:
             return
-        speed = model.fastest_wave()
-        flow = float(np.abs(model.state.velocity_x).max() + np.abs(model.state.velocity_y).max())
-        if speed <= self._checked_speed() and flow <= self._checked_flow:
+        speed, crossing = model.fastest_wave(), model.crossing_rate()
+        if speed <= 1.02 * self._checked[0] and crossing <= 1.1 * self._checked[1]:
             return
+        self._checked = speed, crossing
         limits = step_limits(
-            numerics.scheme, model.grid, speed, flow, model.constants.viscosity, model.constants.diffusivity
+            numerics.scheme, model.grid, speed, crossing, model.constants.viscosity, model.constants.diffusivity
         )
-        self._checked = speed, flow
         if model.clock.dt <= LIMIT_MARGIN * limits.smallest:
             return
         shorter = choose_step(limits.smallest, numerics.step_safety)
@@ -260,15 +261,6 @@ class Run:
             f"day {model.clock.days:.0f}: step shortened from {model.clock.dt:g} s to {shorter:g} s ({limits.cause})"
         )
         model.change_step(shorter)
-
-    _checked: tuple[float, float] = (0.0, 0.0)
-
-    def _checked_speed(self) -> float:
-        return self._checked[0] * 1.02
-
-    @property
-    def _checked_flow(self) -> float:
-        return self._checked[1] * 1.1
 
     # -- checkpoint ---------------------------------------------------------------------------------------------------
 

@@ -32,7 +32,14 @@ def mean_of_dilution(x: float) -> float:
 
 @kernel
 def surface_heating(
-    h: float, per_h: float, theta: float, entrained: float, prescribed: float, restoring: float, target: float, dt: float
+    h: float,
+    per_h: float,
+    theta: float,
+    entrained: float,
+    prescribed: float,
+    restoring: float,
+    target: float,
+    dt: float,
 ) -> float:
     """Heat the surface gives the column in one step, K m: Int Q/(rho0 c_p) dt.
 

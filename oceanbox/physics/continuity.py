@@ -7,44 +7,55 @@ from oceanbox.compiling import kernel
 from oceanbox.physics.limiter import limited_face_value
 from oceanbox.physics.state import Constants
 
-__all__ = ["keep_thickness_positive", "volume_transport"]
+__all__ = ["keep_thickness_positive", "mean_thickness", "volume_transport"]
 
 Array = NDArray[np.float64]
 
 
 @kernel
-def face_thickness(behind: float, west: float, east: float, beyond: float, speed: float, constants: Constants) -> float:
-    """h on a face: (h_W + h_E)/2, or upwind biased, or the rest depth of linear dynamics, m."""
+def mean_thickness(h: Array, constants: Constants, hx: Array, hy: Array) -> None:
+    """<h>^x on x faces and <h>^y on y faces, m, ghost faces included; in linear dynamics the rest depth everywhere."""
+    rows, columns = h.shape
     if constants.linear_depth > 0.0:
-        return constants.linear_depth
-    if constants.upwind_thickness:
-        if speed > 0.0:
-            return limited_face_value(behind, west, east, 0.0)
-        return limited_face_value(beyond, east, west, 0.0)
-    return 0.5 * (west + east)
+        hx[:, :] = constants.linear_depth
+        hy[:, :] = constants.linear_depth
+        return
+    for j in range(1, rows):
+        for i in range(1, columns):
+            hx[j, i] = 0.5 * (h[j, i - 1] + h[j, i])
+            hy[j, i] = 0.5 * (h[j - 1, i] + h[j, i])
 
 
 @kernel
-def volume_transport(h: Array, u: Array, v: Array, constants: Constants, U: Array, V: Array) -> None:
-    """U = <h>^x u on x faces, V = <h>^y v on y faces, m2 s-1.
+def upwind_thickness(behind: float, west: float, east: float, beyond: float, speed: float) -> float:
+    """h on a face, upwind biased and flux-limited, m."""
+    if speed > 0.0:
+        return limited_face_value(behind, west, east, 0.0)
+    return limited_face_value(beyond, east, west, 0.0)
 
-    The centred mean makes the flow conserve energy together with ``momentum.rotation`` (Sadourny 1975, J. Atmos. Sci. 32,
-    680).  All arrays (ny+4, nx+4); U and V are overwritten on the faces of interior cells.
+
+@kernel
+def volume_transport(
+    h: Array, hx: Array, hy: Array, u: Array, v: Array, constants: Constants, U: Array, V: Array
+) -> None:
+    """U = <h>^x u on x faces, V = <h>^y v on y faces, m2 s-1, from the thickness on faces.
+
+    The centred mean makes the flow conserve energy together with ``momentum`` (Sadourny 1975, J. Atmos. Sci. 32, 680); an
+    upwind-biased thickness trades that for monotone fronts.  All arrays (ny+4, nx+4).
     """
     rows, columns = h.shape
-    if constants.upwind_thickness or constants.linear_depth > 0.0:
+    if constants.upwind_thickness and constants.linear_depth == 0.0:
         for j in range(2, rows - 1):
-            for i in range(2, columns - 1):
-                hx = face_thickness(h[j, i - 2], h[j, i - 1], h[j, i], h[j, i + 1], u[j, i], constants)
-                U[j, i] = u[j, i] * hx
+            for n in range(columns - 3):
+                i = n + 2
+                U[j, i] = u[j, i] * upwind_thickness(h[j, i - 2], h[j, i - 1], h[j, i], h[j, i + 1], u[j, i])
             for i in range(1, columns - 1):
-                hy = face_thickness(h[j - 2, i], h[j - 1, i], h[j, i], h[j + 1, i], v[j, i], constants)
-                V[j, i] = v[j, i] * hy
-    else:
-        for j in range(2, rows - 1):
-            for i in range(1, columns - 1):
-                U[j, i] = 0.5 * (h[j, i - 1] + h[j, i]) * u[j, i]
-                V[j, i] = 0.5 * (h[j - 1, i] + h[j, i]) * v[j, i]
+                V[j, i] = v[j, i] * upwind_thickness(h[j - 2, i], h[j - 1, i], h[j, i], h[j + 1, i], v[j, i])
+        return
+    for j in range(2, rows - 1):
+        for i in range(1, columns - 1):
+            U[j, i] = hx[j, i] * u[j, i]
+            V[j, i] = hy[j, i] * v[j, i]
 
 
 # A cell may lose at most this share of its water through its faces in one step.
@@ -74,7 +85,8 @@ def keep_thickness_positive(h: Array, U: Array, V: Array, dt: float, constants: 
     dt_dy = dt / constants.dy
     worst = 0.0
     for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
+        for n in range(columns - 4):
+            i = n + 2
             share[j, i] = outflow_share(h, U, V, j, i, dt_dx, dt_dy)
             worst = max(worst, share[j, i])
     if worst <= LARGEST_OUTFLOW:
@@ -85,13 +97,15 @@ def keep_thickness_positive(h: Array, U: Array, V: Array, dt: float, constants: 
         share[j, nx + 2] = share[j, 2]
     changed = 0
     for j in range(2, rows - 2):
-        for i in range(2, columns - 1):
+        for n in range(columns - 3):
+            i = n + 2
             donor = share[j, i - 1] if U[j, i] > 0.0 else share[j, i]
             if donor > LARGEST_OUTFLOW and U[j, i] != 0.0:
                 U[j, i] *= LARGEST_OUTFLOW / donor
                 changed += 1
     for j in range(3, rows - 2):
-        for i in range(2, columns - 2):
+        for n in range(columns - 4):
+            i = n + 2
             donor = share[j - 1, i] if V[j, i] > 0.0 else share[j, i]
             if donor > LARGEST_OUTFLOW and V[j, i] != 0.0:
                 V[j, i] *= LARGEST_OUTFLOW / donor

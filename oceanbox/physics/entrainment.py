@@ -37,7 +37,8 @@ def mixed_layer_transport(
     rows, columns = h.shape
     depth = constants.mixed_depth
     for j in range(2, rows - 1):
-        for i in range(2, columns - 1):
+        for n in range(columns - 3):
+            i = n + 2
             hx = 0.5 * (h[j, i - 1] + h[j, i])
             hy = 0.5 * (h[j - 1, i] + h[j, i])
             shared_x = min(depth, hx)

@@ -4,12 +4,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from oceanbox.compiling import kernel
+from oceanbox.grid.edges import fill_centre_edges, fill_x_face_edges, fill_y_face_edges
 from oceanbox.physics.buoyancy import buoyancy
 from oceanbox.physics.column import outcrop_share, surface_heating, transformed_thickness
 from oceanbox.physics.entrainment import diffusive_gain, mixed_layer_transport, shoaling_gain, upwelling_gain
 from oceanbox.physics.state import Constants, Forcing, Ledger
 
-__all__ = ["exchange"]
+__all__ = ["dilute_momentum", "exchange"]
 
 Array = NDArray[np.float64]
 
@@ -23,26 +24,30 @@ def entrain(
     per_dx = 1.0 / constants.dx
     per_dy = 1.0 / constants.dy
     for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
+        for n in range(columns - 4):
+            i = n + 2
             prescribed = forcing.prescribed_entrainment[j, i] * dt
             ledger.entrainment_prescribed[j, i] += prescribed
             gain[j, i] = prescribed
     if constants.mixed_depth > 0.0:
         for j in range(2, rows - 2):
-            for i in range(2, columns - 2):
+            for n in range(columns - 4):
+                i = n + 2
                 upwelling = (Mx[j, i + 1] - Mx[j, i]) * per_dx + (My[j + 1, i] - My[j, i]) * per_dy
                 up = upwelling_gain(h[j, i], upwelling, dt, constants)
                 ledger.entrainment_upwelling[j, i] += up
                 gain[j, i] += up
     if constants.diapycnal_diffusivity > 0.0:
         for j in range(2, rows - 2):
-            for i in range(2, columns - 2):
+            for n in range(columns - 4):
+                i = n + 2
                 diffused = diffusive_gain(h[j, i], dt, constants)
                 ledger.entrainment_diffusive[j, i] += diffused
                 gain[j, i] += diffused
     if constants.shoaling_depth > 0.0:
         for j in range(2, rows - 2):
-            for i in range(2, columns - 2):
+            for n in range(columns - 4):
+                i = n + 2
                 kept = shoaling_gain(h[j, i], dt, constants)
                 ledger.entrainment_shoaling[j, i] += kept
                 gain[j, i] += kept
@@ -70,7 +75,7 @@ def exchange(
         heat  += Int Q/(rho0 c_p) dt - outcrop (Theta)
         salt  -= S_ref (P - E) dt + w_d Sigma dt + outcrop (Sigma)
 
-    All arrays (ny+4, nx+4), interior cells changed; ``gain`` is left holding w_e dt for the momentum equation.
+    All arrays (ny+4, nx+4), interior cells changed; ``gain`` is left holding w_e dt for `dilute_momentum`.
     """
     rows, columns = h.shape
     if constants.mixed_depth > 0.0:
@@ -79,7 +84,8 @@ def exchange(
     handing_over = dt / (constants.outcrop_time + dt)
     outcrop_buoyancy = constants.gravity * constants.expansion_abyss * constants.outcrop_margin
     for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
+        for n in range(columns - 4):
+            i = n + 2
             h0 = h[j, i]
             per_h = 1.0 / h0
             h1 = h0 + gain[j, i]
@@ -129,3 +135,19 @@ def exchange(
             h[j, i] = h1
             heat[j, i] = q1
             salt[j, i] = s1
+
+
+@kernel
+def dilute_momentum(u: Array, v: Array, hx: Array, hy: Array, gain: Array, constants: Constants) -> None:
+    """u /= 1 + <w_e dt>/h on faces: entrained water comes in at rest.  ``gain`` is w_e dt at centres; its edges are filled."""
+    if constants.linear_depth > 0.0:
+        return
+    fill_centre_edges(gain, constants.periodic_x)
+    rows, columns = u.shape
+    for j in range(2, rows - 2):
+        for n in range(columns - 4):
+            i = n + 2
+            u[j, i] /= 1.0 + 0.5 * (gain[j, i] + gain[j, i - 1]) / hx[j, i]
+            v[j, i] /= 1.0 + 0.5 * (gain[j, i] + gain[j - 1, i]) / hy[j, i]
+    fill_x_face_edges(u, constants.periodic_x, constants.tangential_sign)
+    fill_y_face_edges(v, constants.periodic_x, constants.tangential_sign)

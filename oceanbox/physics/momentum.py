@@ -1,88 +1,100 @@
-"""Momentum in vector-invariant form: rotation, kinetic energy, pressure, friction, wind.
+"""Momentum in vector-invariant form: vorticity, kinetic energy, planetary rotation, pressure, friction, wind.
 
-Tendencies are 2-D compute arrays, overwritten on the faces of interior cells; the edges decide what a wall keeps.
+Tendencies are 2-D compute arrays on the faces of interior cells; the edges decide what a wall keeps.  ``hx`` and ``hy`` are the
+thickness on x and y faces (`continuity.mean_thickness`).  With the corner mean <h>^xy = (<h>^x + <h>^x)/2 of the faces south
+and north of a corner, the energy-conserving form of Sadourny (1975, J. Atmos. Sci. 32, 680) is
+
+    du = <q <V>^x>^y - K_x,    dv = -<q <U>^y>^x - K_y,    q = (f + zeta)/<h>^xy.
+
+It is taken in two parts, zeta and f, because a scheme may step them differently; their sum conserves energy.
 """
 
 import numpy as np
 from numpy.typing import NDArray
 
 from oceanbox.compiling import kernel
-from oceanbox.physics.state import Constants, Forcing
+from oceanbox.physics.state import Constants
 
-__all__ = ["add_friction_and_wind", "kinetic_energy", "potential_vorticity", "pressure_force", "rotation"]
+__all__ = ["advection", "friction", "planetary_x", "planetary_y", "pressure_force", "wind_acceleration"]
 
 Array = NDArray[np.float64]
 
 
 @kernel
-def potential_vorticity(h: Array, u: Array, v: Array, f: Array, constants: Constants, q: Array) -> None:
-    """q = (f + v_x - u_y)/<h>^xy at corners, m-1 s-1."""
-    rows, columns = h.shape
+def advection(
+    hx: Array, u: Array, v: Array, U: Array, V: Array, constants: Constants, q: Array, K: Array, du: Array, dv: Array
+) -> None:
+    """du = <q <V>^x>^y - K_x, dv = -<q <U>^y>^x - K_y with q = zeta/<h>^xy, zeta = v_x - u_y, K = (<u^2>^x + <v^2>^y)/2.
+
+    ``q`` (corners) and ``K`` (centres) are scratch.
+    """
+    rows, columns = u.shape
     per_dx = 1.0 / constants.dx
     per_dy = 1.0 / constants.dy
     for j in range(2, rows - 1):
-        for i in range(2, columns - 1):
+        for n in range(columns - 3):
+            i = n + 2
             zeta = (v[j, i] - v[j, i - 1]) * per_dx - (u[j, i] - u[j - 1, i]) * per_dy
-            q[j, i] = 4.0 * (f[j] + zeta) / (h[j, i] + h[j, i - 1] + h[j - 1, i] + h[j - 1, i - 1])
-
-
-@kernel
-def kinetic_energy(u: Array, v: Array, K: Array) -> None:
-    """K = (<u^2>^x + <v^2>^y)/2 at centres, m2 s-2, one ghost cell included on the south and west."""
-    rows, columns = u.shape
+            q[j, i] = 0.5 * zeta / (hx[j, i] + hx[j - 1, i])
     for j in range(1, rows - 1):
         for i in range(1, columns - 1):
             K[j, i] = 0.25 * (u[j, i] ** 2 + u[j, i + 1] ** 2 + v[j, i] ** 2 + v[j + 1, i] ** 2)
+    for j in range(2, rows - 2):
+        for n in range(columns - 4):
+            i = n + 2
+            south = q[j, i] * (V[j, i - 1] + V[j, i])
+            north = q[j + 1, i] * (V[j + 1, i - 1] + V[j + 1, i])
+            du[j, i] = south + north - (K[j, i] - K[j, i - 1]) * per_dx
+            west = q[j, i] * (U[j - 1, i] + U[j, i])
+            east = q[j, i + 1] * (U[j - 1, i + 1] + U[j, i + 1])
+            dv[j, i] = -(west + east) - (K[j, i] - K[j - 1, i]) * per_dy
 
 
 @kernel
-def rotation(
-    h: Array,
-    u: Array,
-    v: Array,
-    U: Array,
-    V: Array,
-    f: Array,
-    constants: Constants,
-    q: Array,
-    K: Array,
-    du: Array,
-    dv: Array,
-) -> None:
-    """Vorticity flux and Bernoulli gradient, or the planetary part alone.
+def planetary_x(hx: Array, V: Array, f: Array, constants: Constants, du: Array) -> None:
+    """du = <(f/<h>^xy) <V>^x>^y; without momentum advection du = <f <V>^x>^y/<h>^x.
 
-    With momentum advection (Sadourny 1975, J. Atmos. Sci. 32, 680, energy-conserving form)
-
-        du = <q <V>^x>^y - K_x,    dv = -<q <U>^y>^x - K_y.
-
-    Without it, or in linear dynamics,
-
-        du = <f <V>^x>^y / <h>^x,   dv = -<f <U>^y>^x / <h>^y,
-
-    which makes the Coriolis force on transport linear, so that Sverdrup balance beta V = curl(tau)/rho0 holds for any h.
+    The second form makes the Coriolis force on transport linear, so that Sverdrup balance beta V = curl(tau)/rho0 holds for
+    any h; where h is uniform the two agree.  ``f`` is given on corner rows.
     """
-    rows, columns = h.shape
-    per_dx = 1.0 / constants.dx
-    per_dy = 1.0 / constants.dy
-    if constants.momentum_advection and constants.linear_depth == 0.0:
-        potential_vorticity(h, u, v, f, constants, q)
-        kinetic_energy(u, v, K)
+    rows, columns = hx.shape
+    if constants.momentum_advection:
         for j in range(2, rows - 2):
-            for i in range(2, columns - 2):
-                south = q[j, i] * (V[j, i - 1] + V[j, i])
-                north = q[j + 1, i] * (V[j + 1, i - 1] + V[j + 1, i])
-                du[j, i] = 0.25 * (south + north) - (K[j, i] - K[j, i - 1]) * per_dx
-                west = q[j, i] * (U[j - 1, i] + U[j, i])
-                east = q[j, i + 1] * (U[j - 1, i + 1] + U[j, i + 1])
-                dv[j, i] = -0.25 * (west + east) - (K[j, i] - K[j - 1, i]) * per_dy
+            f_south = 0.5 * f[j]
+            f_north = 0.5 * f[j + 1]
+            for n in range(columns - 4):
+                i = n + 2
+                south = f_south * (V[j, i - 1] + V[j, i]) / (hx[j, i] + hx[j - 1, i])
+                north = f_north * (V[j + 1, i - 1] + V[j + 1, i]) / (hx[j + 1, i] + hx[j, i])
+                du[j, i] = south + north
         return
-    depth = constants.linear_depth
     for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
-            hx = depth if depth > 0.0 else 0.5 * (h[j, i] + h[j, i - 1])
-            hy = depth if depth > 0.0 else 0.5 * (h[j, i] + h[j - 1, i])
-            du[j, i] = 0.25 * (f[j] * (V[j, i - 1] + V[j, i]) + f[j + 1] * (V[j + 1, i - 1] + V[j + 1, i])) / hx
-            dv[j, i] = -0.25 * f[j] * (U[j - 1, i] + U[j, i] + U[j - 1, i + 1] + U[j, i + 1]) / hy
+        f_south = 0.25 * f[j]
+        f_north = 0.25 * f[j + 1]
+        for n in range(columns - 4):
+            i = n + 2
+            turned = f_south * (V[j, i - 1] + V[j, i]) + f_north * (V[j + 1, i - 1] + V[j + 1, i])
+            du[j, i] = turned / hx[j, i]
+
+
+@kernel
+def planetary_y(hx: Array, hy: Array, U: Array, f: Array, constants: Constants, dv: Array) -> None:
+    """dv = -<(f/<h>^xy) <U>^y>^x; without momentum advection dv = -<f <U>^y>^x/<h>^y."""
+    rows, columns = hx.shape
+    if constants.momentum_advection:
+        for j in range(2, rows - 2):
+            f_here = 0.5 * f[j]
+            for n in range(columns - 4):
+                i = n + 2
+                west = (U[j - 1, i] + U[j, i]) / (hx[j, i] + hx[j - 1, i])
+                east = (U[j - 1, i + 1] + U[j, i + 1]) / (hx[j, i + 1] + hx[j - 1, i + 1])
+                dv[j, i] = -f_here * (west + east)
+        return
+    for j in range(2, rows - 2):
+        f_here = 0.25 * f[j]
+        for n in range(columns - 4):
+            i = n + 2
+            dv[j, i] = -f_here * (U[j - 1, i] + U[j, i] + U[j - 1, i + 1] + U[j, i + 1]) / hy[j, i]
 
 
 @kernel
@@ -122,7 +134,8 @@ def pressure_force(h: Array, b: Array, constants: Constants, work: Array, fx: Ar
         fxk = fx[k]
         fyk = fy[k]
         for j in range(2, rows - 2):
-            for i in range(2, columns - 2):
+            for n in range(columns - 4):
+                i = n + 2
                 bx = 0.5 * (bk[j, i] + bk[j, i - 1])
                 by = 0.5 * (bk[j, i] + bk[j - 1, i])
                 fxk[j, i] = -(P[j, i] - P[j, i - 1] + bx * (d[j, i] - d[j, i - 1])) * per_dx
@@ -130,50 +143,36 @@ def pressure_force(h: Array, b: Array, constants: Constants, work: Array, fx: Ar
 
 
 @kernel
-def add_friction_and_wind(
-    h: Array, u: Array, v: Array, wind: float, forcing: Forcing, constants: Constants, du: Array, dv: Array
-) -> None:
-    """du += A lap(u) + wind tau_x/(rho0 <h>^x), likewise dv; with friction on transport A lap(<h> u)/<h>.
+def wind_acceleration(stress: Array, thickness: Array, fraction: float, du: Array) -> None:
+    """du += fraction tau/(rho0 h) on faces; ``stress`` is tau/rho0 and ``thickness`` h on the same faces."""
+    rows, columns = du.shape
+    for j in range(2, rows - 2):
+        for n in range(columns - 4):
+            i = n + 2
+            du[j, i] += fraction * stress[j, i] / thickness[j, i]
 
-    ``wind`` is the fraction of the stress that acts now; 0 for a layer that the wind does not touch.
-    """
-    rows, columns = h.shape
+
+@kernel
+def friction(u: Array, thickness: Array, constants: Constants, du: Array) -> None:
+    """du += A lap(u), or A lap(h u)/h where friction acts on transport; ``thickness`` is h on the faces of u."""
+    rows, columns = u.shape
     ax = constants.viscosity / constants.dx**2
     ay = constants.viscosity / constants.dy**2
-    depth = constants.linear_depth
-    wind_x = forcing.wind_x
-    wind_y = forcing.wind_y
-    for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
-            hx = depth if depth > 0.0 else 0.5 * (h[j, i] + h[j, i - 1])
-            hy = depth if depth > 0.0 else 0.5 * (h[j, i] + h[j - 1, i])
-            du[j, i] += wind * wind_x[j, i] / hx
-            dv[j, i] += wind * wind_y[j, i] / hy
     if constants.viscosity == 0.0:
         return
-    if constants.viscosity_on_transport and depth == 0.0:
+    h = thickness
+    if constants.viscosity_on_transport:
         for j in range(2, rows - 2):
-            for i in range(2, columns - 2):
-                hx = h[j, i] + h[j, i - 1]
-                west = (h[j, i - 1] + h[j, i - 2]) * u[j, i - 1]
-                east = (h[j, i + 1] + h[j, i]) * u[j, i + 1]
-                south = (h[j - 1, i] + h[j - 1, i - 1]) * u[j - 1, i]
-                north = (h[j + 1, i] + h[j + 1, i - 1]) * u[j + 1, i]
-                here = hx * u[j, i]
-                du[j, i] += (ax * (west + east - 2.0 * here) + ay * (south + north - 2.0 * here)) / hx
-                hy = h[j, i] + h[j - 1, i]
-                west = (h[j, i - 1] + h[j - 1, i - 1]) * v[j, i - 1]
-                east = (h[j, i + 1] + h[j - 1, i + 1]) * v[j, i + 1]
-                south = (h[j - 1, i] + h[j - 2, i]) * v[j - 1, i]
-                north = (h[j + 1, i] + h[j, i]) * v[j + 1, i]
-                here = hy * v[j, i]
-                dv[j, i] += (ax * (west + east - 2.0 * here) + ay * (south + north - 2.0 * here)) / hy
+            for n in range(columns - 4):
+                i = n + 2
+                here = 2.0 * h[j, i] * u[j, i]
+                across_x = h[j, i - 1] * u[j, i - 1] + h[j, i + 1] * u[j, i + 1] - here
+                across_y = h[j - 1, i] * u[j - 1, i] + h[j + 1, i] * u[j + 1, i] - here
+                du[j, i] += (ax * across_x + ay * across_y) / h[j, i]
         return
     for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
-            du[j, i] += ax * (u[j, i - 1] + u[j, i + 1] - 2.0 * u[j, i]) + ay * (
-                u[j - 1, i] + u[j + 1, i] - 2.0 * u[j, i]
-            )
-            dv[j, i] += ax * (v[j, i - 1] + v[j, i + 1] - 2.0 * v[j, i]) + ay * (
-                v[j - 1, i] + v[j + 1, i] - 2.0 * v[j, i]
-            )
+        for n in range(columns - 4):
+            i = n + 2
+            across_x = u[j, i - 1] + u[j, i + 1] - 2.0 * u[j, i]
+            across_y = u[j - 1, i] + u[j + 1, i] - 2.0 * u[j, i]
+            du[j, i] += ax * across_x + ay * across_y

@@ -53,6 +53,7 @@ class Constants(NamedTuple):
     periodic_x: bool
     tangential_sign: float  # +1 free slip, -1 no slip
     momentum_advection: bool
+    salty: bool  # salt is carried along; False where every salinity is and stays that of the abyss
     linear_depth: float  # rest depth of linear dynamics, m; 0 for the full equations
     upwind_thickness: bool  # thickness on faces upwind biased rather than centred
     centred_tracers: bool  # tracers on faces centred, unlimited (for the energy identity)

@@ -42,7 +42,8 @@ def tracer_flux(h: Array, c: Array, U: Array, V: Array, dt: float, constants: Co
     dt_dy = dt / constants.dy
     centred = constants.centred_tracers
     for j in range(2, rows - 2):
-        for i in range(2, columns - 1):
+        for n in range(columns - 3):
+            i = n + 2
             flow = U[j, i]
             if flow > 0.0:
                 share = flow * dt_dx / h[j, i - 1]
@@ -51,7 +52,8 @@ def tracer_flux(h: Array, c: Array, U: Array, V: Array, dt: float, constants: Co
                 share = -flow * dt_dx / h[j, i]
                 Fx[j, i] = flow * carried(c[j, i + 1], c[j, i], c[j, i - 1], share, centred)
     for j in range(2, rows - 1):
-        for i in range(2, columns - 2):
+        for n in range(columns - 4):
+            i = n + 2
             flow = V[j, i]
             if flow > 0.0:
                 share = flow * dt_dy / h[j - 1, i]
@@ -68,7 +70,8 @@ def mixing_flux(h: Array, c: Array, constants: Constants, Fx: Array, Fy: Array) 
     across_x = 0.5 * constants.diffusivity / constants.dx
     across_y = 0.5 * constants.diffusivity / constants.dy
     for j in range(2, rows - 1):
-        for i in range(2, columns - 1):
+        for n in range(columns - 3):
+            i = n + 2
             Fx[j, i] = -across_x * (h[j, i - 1] + h[j, i]) * (c[j, i] - c[j, i - 1])
             Fy[j, i] = -across_y * (h[j - 1, i] + h[j, i]) * (c[j, i] - c[j - 1, i])
 
@@ -80,5 +83,6 @@ def transport_step(content: Array, Fx: Array, Fy: Array, dt: float, constants: C
     dt_dx = dt / constants.dx
     dt_dy = dt / constants.dy
     for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
+        for n in range(columns - 4):
+            i = n + 2
             content[j, i] -= dt_dx * (Fx[j, i + 1] - Fx[j, i]) + dt_dy * (Fy[j + 1, i] - Fy[j, i])

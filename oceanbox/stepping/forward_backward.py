@@ -4,13 +4,13 @@ One step from n to n+1, ring index of the memory = step count modulo 3:
 
 1. transports U^n; the thickness equation uses their weighted mean over n, n-1, n-2;
 2. the same weighted transports carry heat and salt, forward in time;
-3. columns exchange with air and abyss (``physics.exchange``), which completes h, heat and salt at n+1;
-4. rotation and advection at n (third-order Adams-Bashforth), pressure force weighted over n+1 ... n-2, friction at n,
-   wind at n + 1/2; drag and the momentum of entrained water implicit:
+3. every few steps columns exchange with air and abyss (``physics.exchange``) over the time since they last did: these terms
+   take days and would otherwise be most of the cost;
+4. velocity: vorticity flux and Bernoulli gradient at n (third-order Adams-Bashforth), pressure force weighted over
+   n+1 ... n-2, friction at n, wind at n + 1/2, drag implicit;
+5. planetary rotation in turn: u^{n+1} from v^n, then v^{n+1} from u^{n+1}, neutral for f dt < 2.
 
-       u^{n+1} = (u^n + dt force) / (1 + dt (r + w_e/h)).
-
-Weights: ``stepping.weights``.
+Weights: ``stepping.weights``; limits: ``stepping.limits``.
 """
 
 import numpy as np
@@ -19,16 +19,16 @@ from numpy.typing import NDArray
 from oceanbox.compiling import kernel
 from oceanbox.grid.edges import fill_centre_edges, fill_x_face_edges, fill_y_face_edges
 from oceanbox.physics.buoyancy import layer_buoyancy
-from oceanbox.physics.continuity import keep_thickness_positive, volume_transport
-from oceanbox.physics.exchange import exchange
-from oceanbox.physics.momentum import add_friction_and_wind, pressure_force, rotation
+from oceanbox.physics.continuity import keep_thickness_positive, mean_thickness, volume_transport
+from oceanbox.physics.exchange import dilute_momentum, exchange
+from oceanbox.physics.momentum import advection, friction, planetary_x, planetary_y, pressure_force, wind_acceleration
 from oceanbox.physics.state import Constants, Forcing, Ledger, State
 from oceanbox.physics.tracers import concentration, mixing_flux, tracer_flux, transport_step
 from oceanbox.stepping.booking import book
 from oceanbox.stepping.memory import Memory, Workspace
-from oceanbox.stepping.weights import pressure_weights, rotation_weights, transport_weights
+from oceanbox.stepping.weights import advection_weights, pressure_weights, transport_weights
 
-__all__ = ["advance_forward_backward"]
+__all__ = ["advance_forward_backward", "wind_fraction"]
 
 Array = NDArray[np.float64]
 
@@ -69,29 +69,97 @@ def move_tracer(
 
 
 @kernel
-def update_velocity(
-    u: Array, h: Array, force: Array, rotation_now: Array, rotation_before: Array, rotation_earlier: Array,
-    pressure_next: Array, pressure_now: Array, pressure_before: Array, pressure_earlier: Array,
-    drag: Array, gain: Array, along_x: int, steps_done: int, dt: float, constants: Constants,
+def move_water(
+    state: State, memory: Memory, constants: Constants, ledger: Ledger, work: Workspace,
+    now: int, before: int, earlier: int, history: int, dt: float,
 ) -> None:  # fmt: skip
-    """u^{n+1} from the weighted terms; the oldest pressure slot then takes the newest force.
+    """Steps 1 and 2 for every layer: volume, heat and salt move with the weighted transports, all booked."""
+    h, heat, salt, u, v = state
+    tx, ty = memory.transport_x, memory.transport_y
+    weights = transport_weights(history)
+    for k in range(h.shape[0]):
+        volume_transport(h[k], work.thickness_x[k], work.thickness_y[k], u[k], v[k], constants, tx[now, k], ty[now, k])
+        fx, fy = work.flux_x[k], work.flux_y[k]
+        weigh_transports(tx[now, k], tx[before, k], tx[earlier, k], weights, fx)
+        weigh_transports(ty[now, k], ty[before, k], ty[earlier, k], weights, fy)
+        ledger.limited_faces[0] += keep_thickness_positive(h[k], fx, fy, dt, constants, work.share)
+        move_tracer(
+            h[k], heat[k], work, k, dt, constants, ledger.heat_advection_x[k], ledger.heat_advection_y[k],
+            ledger.heat_mixing_x[k], ledger.heat_mixing_y[k],
+        )  # fmt: skip
+        if constants.salty:
+            move_tracer(
+                h[k], salt[k], work, k, dt, constants, ledger.salt_advection_x[k], ledger.salt_advection_y[k],
+                ledger.salt_mixing_x[k], ledger.salt_mixing_y[k],
+            )  # fmt: skip
+        book(ledger.volume_x[k], ledger.volume_y[k], fx, fy, dt)
+        transport_step(h[k], fx, fy, dt, constants)
 
-    ``along_x`` = 1 for x faces (neighbour to the west), 0 for y faces (neighbour to the south).
-    """
-    r0, r1, r2 = rotation_weights(steps_done)
-    p0, p1, p2, p3 = pressure_weights(steps_done)
-    across = 1 - along_x
-    depth = constants.linear_depth
+
+@kernel
+def fill_layer_edges(state: State, work: Workspace, constants: Constants) -> None:
+    """Ghost cells of the contents, buoyancy everywhere, thickness on faces."""
+    h, heat, salt, _, _ = state
+    for k in range(h.shape[0]):
+        fill_centre_edges(h[k], constants.periodic_x)
+        fill_centre_edges(heat[k], constants.periodic_x)
+        fill_centre_edges(salt[k], constants.periodic_x)
+        layer_buoyancy(h[k], heat[k], salt[k], constants, work.buoyancy[k])
+        mean_thickness(h[k], constants, work.thickness_x[k], work.thickness_y[k])
+
+
+@kernel
+def update_velocity(
+    u: Array, force: Array, advection_now: Array, advection_before: Array, advection_earlier: Array,
+    pressure_next: Array, pressure_now: Array, pressure_before: Array, pressure_earlier: Array,
+    drag: Array, history: int, dt: float,
+) -> None:  # fmt: skip
+    """u^{n+1} = (u^n + dt [weighted terms + force])/(1 + dt r); the oldest pressure slot then takes the newest force."""
+    a0, a1, a2 = advection_weights(history)
+    p0, p1, p2, p3 = pressure_weights(history)
     rows, columns = u.shape
     for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
-            total = r0 * rotation_now[j, i] + r1 * rotation_before[j, i] + r2 * rotation_earlier[j, i]
+        for n in range(columns - 4):
+            i = n + 2
+            total = a0 * advection_now[j, i] + a1 * advection_before[j, i] + a2 * advection_earlier[j, i]
             total += p0 * pressure_next[j, i] + p1 * pressure_now[j, i]
             total += p2 * pressure_before[j, i] + p3 * pressure_earlier[j, i] + force[j, i]
             pressure_earlier[j, i] = pressure_next[j, i]
-            entrained = gain[j, i] + gain[j - across, i - along_x]
-            thickness = 2.0 * depth if depth > 0.0 else h[j, i] + h[j - across, i - along_x]
-            u[j, i] = (u[j, i] + dt * total) / (1.0 + dt * drag[j, i] + entrained / thickness)
+            u[j, i] = (u[j, i] + dt * total) / (1.0 + dt * drag[j, i])
+
+
+@kernel
+def push_velocity(
+    state: State, memory: Memory, forcing: Forcing, constants: Constants, work: Workspace,
+    now: int, before: int, earlier: int, history: int, wind: float, dt: float,
+) -> None:  # fmt: skip
+    """Steps 4 and 5 for every layer; ``wind`` is the fraction of the stress that acts, on the top layer alone."""
+    _, _, _, u, v = state
+    ax, ay = memory.advection_x, memory.advection_y
+    px, py = memory.pressure_x, memory.pressure_y
+    sign, periodic = constants.tangential_sign, constants.periodic_x
+    for k in range(u.shape[0]):
+        hx, hy = work.thickness_x[k], work.thickness_y[k]
+        force_x, force_y = work.force_x[k], work.force_y[k]
+        # force_x already holds the planetary rotation by v^n.  Pressure slots: 'before' n, 'earlier' n-1, 'now' n-2.
+        friction(u[k], hx, constants, force_x)
+        if k == 0:
+            wind_acceleration(forcing.wind_x, hx, wind, force_x)
+        update_velocity(
+            u[k], force_x, ax[now, k], ax[before, k], ax[earlier, k],
+            work.pressure_x[k], px[before, k], px[earlier, k], px[now, k], forcing.drag_x, history, dt,
+        )  # fmt: skip
+        fill_x_face_edges(u[k], periodic, sign)
+        volume_transport(hx, hx, hy, u[k], v[k], constants, work.flux_x[k], work.flux_y[k])
+        planetary_y(hx, hy, work.flux_x[k], forcing.coriolis, constants, force_y)
+        friction(v[k], hy, constants, force_y)
+        if k == 0:
+            wind_acceleration(forcing.wind_y, hy, wind, force_y)
+        update_velocity(
+            v[k], force_y, ay[now, k], ay[before, k], ay[earlier, k],
+            work.pressure_y[k], py[before, k], py[earlier, k], py[now, k], forcing.drag_y, history, dt,
+        )  # fmt: skip
+        fill_y_face_edges(v[k], periodic, sign)
 
 
 @kernel
@@ -106,83 +174,40 @@ def advance_forward_backward(
     history: int,
     start_time: float,
     dt: float,
+    exchange_every: int,
     steps: int,
 ) -> None:
     """Take ``steps`` steps of ``dt`` seconds in place.
 
-    ``steps_done`` counts all steps since the memory was made (it selects the ring slot), ``history`` the steps of this
-    ``dt`` behind us (it selects the starting weights), ``start_time`` [s] is the model time of the state.
+    ``steps_done`` counts all steps since the memory was made (it selects the ring slot and the steps that end with an
+    exchange), ``history`` the steps of this ``dt`` behind us (it selects the starting weights), ``start_time`` [s] is the
+    model time of the state.
     """
     h, heat, salt, u, v = state
-    layers = h.shape[0]
-    periodic = constants.periodic_x
-    sign = constants.tangential_sign
+    fill_layer_edges(state, work, constants)
     for n in range(steps):
         now = (steps_done + n) % 3
         before = (steps_done + n + 2) % 3
         earlier = (steps_done + n + 1) % 3
-        done = history + n
         wind = wind_fraction(start_time + (n + 0.5) * dt, constants)
-        for k in range(layers):
-            volume_transport(h[k], u[k], v[k], constants, memory.transport_x[now, k], memory.transport_y[now, k])
-            rotation(
-                h[k], u[k], v[k], memory.transport_x[now, k], memory.transport_y[now, k], forcing.coriolis, constants,
-                work.vorticity, work.kinetic, memory.rotation_x[now, k], memory.rotation_y[now, k],
+        move_water(state, memory, constants, ledger, work, now, before, earlier, history + n, dt)
+        tx, ty = memory.transport_x, memory.transport_y
+        for k in range(h.shape[0]):
+            hx = work.thickness_x[k]
+            planetary_x(hx, ty[now, k], forcing.coriolis, constants, work.force_x[k])
+            if constants.momentum_advection:
+                advection(
+                    hx, u[k], v[k], tx[now, k], ty[now, k], constants, work.vorticity, work.kinetic,
+                    memory.advection_x[now, k], memory.advection_y[now, k],
+                )  # fmt: skip
+        exchanging = (steps_done + n + 1) % exchange_every == 0
+        if exchanging:
+            exchange(
+                h[0], heat[0], salt[0], u[0], v[0], forcing, constants, wind, exchange_every * dt, ledger,
+                work.mixed_x, work.mixed_y, work.gain[0],
             )  # fmt: skip
-            weights = transport_weights(done)
-            fx, fy = work.flux_x[k], work.flux_y[k]
-            tx, ty = memory.transport_x, memory.transport_y
-            weigh_transports(tx[now, k], tx[before, k], tx[earlier, k], weights, fx)
-            weigh_transports(ty[now, k], ty[before, k], ty[earlier, k], weights, fy)
-            ledger.limited_faces[0] += keep_thickness_positive(h[k], fx, fy, dt, constants, work.share)
-            move_tracer(
-                h[k], heat[k], work, k, dt, constants, ledger.heat_advection_x[k], ledger.heat_advection_y[k],
-                ledger.heat_mixing_x[k], ledger.heat_mixing_y[k],
-            )  # fmt: skip
-            move_tracer(
-                h[k], salt[k], work, k, dt, constants, ledger.salt_advection_x[k], ledger.salt_advection_y[k],
-                ledger.salt_mixing_x[k], ledger.salt_mixing_y[k],
-            )  # fmt: skip
-            book(ledger.volume_x[k], ledger.volume_y[k], fx, fy, dt)
-            transport_step(h[k], fx, fy, dt, constants)
-        exchange(
-            h[0],
-            heat[0],
-            salt[0],
-            u[0],
-            v[0],
-            forcing,
-            constants,
-            wind,
-            dt,
-            ledger,
-            work.mixed_x,
-            work.mixed_y,
-            work.gain[0],
-        )
-        for k in range(layers):
-            fill_centre_edges(h[k], periodic)
-            fill_centre_edges(heat[k], periodic)
-            fill_centre_edges(salt[k], periodic)
-            fill_centre_edges(work.gain[k], periodic)
-            layer_buoyancy(h[k], heat[k], salt[k], constants, work.buoyancy[k])
-        # The newest pressure force goes to scratch first: four levels are needed, three are kept.
-        pressure_force(h, work.buoyancy, constants, work.layer_pair, work.flux_x, work.flux_y)
-        for k in range(layers):
-            work.force_x[k, :, :] = 0.0
-            work.force_y[k, :, :] = 0.0
-            acting = wind if k == 0 else 0.0
-            add_friction_and_wind(h[k], u[k], v[k], acting, forcing, constants, work.force_x[k], work.force_y[k])
-            rx, ry = memory.rotation_x, memory.rotation_y
-            px, py = memory.pressure_x, memory.pressure_y
-            # Pressure slots: 'before' holds n, 'earlier' n-1, 'now' n-2 and takes n+1.
-            update_velocity(
-                u[k], h[k], work.force_x[k], rx[now, k], rx[before, k], rx[earlier, k],
-                work.flux_x[k], px[before, k], px[earlier, k], px[now, k], forcing.drag_x, work.gain[k], 1, done, dt, constants,
-            )  # fmt: skip
-            update_velocity(
-                v[k], h[k], work.force_y[k], ry[now, k], ry[before, k], ry[earlier, k],
-                work.flux_y[k], py[before, k], py[earlier, k], py[now, k], forcing.drag_y, work.gain[k], 0, done, dt, constants,
-            )  # fmt: skip
-            fill_x_face_edges(u[k], periodic, sign)
-            fill_y_face_edges(v[k], periodic, sign)
+        fill_layer_edges(state, work, constants)
+        pressure_force(h, work.buoyancy, constants, work.layer_pair, work.pressure_x, work.pressure_y)
+        push_velocity(state, memory, forcing, constants, work, now, before, earlier, history + n, wind, dt)
+        if exchanging:
+            dilute_momentum(u[0], v[0], work.thickness_x[0], work.thickness_y[0], work.gain[0], constants)

@@ -17,8 +17,8 @@ class Memory(NamedTuple):
 
     transport_x: Array  # U of the last steps
     transport_y: Array
-    rotation_x: Array  # vorticity flux and Bernoulli gradient, x faces
-    rotation_y: Array
+    advection_x: Array  # vorticity flux and Bernoulli gradient, x faces
+    advection_y: Array
     pressure_x: Array  # pressure force, x faces
     pressure_y: Array
 
@@ -39,8 +39,12 @@ class Workspace(NamedTuple):
     mixed_y: Array
     gain: Array  # (L,...) water entrained in the step
     share: Array  # (...) outflow share
-    force_x: Array  # (L,...) friction and wind
+    force_x: Array  # (L,...) the forces of this step
     force_y: Array
+    pressure_x: Array  # (L,...) the newest pressure force
+    pressure_y: Array
+    thickness_x: Array  # (L,...) h on x faces
+    thickness_y: Array  # (L,...) h on y faces
 
 
 def empty_memory(grid: Grid, layers: int) -> Memory:
@@ -52,7 +56,6 @@ def empty_workspace(grid: Grid, layers: int) -> Workspace:
     """Scratch arrays at zero."""
     deep, flat = (layers, *grid.shape), grid.shape
     pair = (2, *grid.shape)
-    shapes = {
-        "flux_x": deep, "flux_y": deep, "buoyancy": deep, "gain": deep, "force_x": deep, "force_y": deep, "layer_pair": pair,
-    }  # fmt: skip
-    return Workspace(*(np.zeros(shapes.get(name, flat)) for name in Workspace._fields))
+    flat_fields = {"tracer_x", "tracer_y", "concentration", "vorticity", "kinetic", "mixed_x", "mixed_y", "share"}
+    shapes = dict.fromkeys(Workspace._fields, deep) | dict.fromkeys(flat_fields, flat) | {"layer_pair": pair}
+    return Workspace(*(np.zeros(shapes[name]) for name in Workspace._fields))

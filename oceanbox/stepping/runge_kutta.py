@@ -17,9 +17,9 @@ from oceanbox.compiling import kernel
 from oceanbox.grid import Grid
 from oceanbox.grid.edges import fill_centre_edges, fill_x_face_edges, fill_y_face_edges
 from oceanbox.physics.buoyancy import layer_buoyancy
-from oceanbox.physics.continuity import keep_thickness_positive, volume_transport
-from oceanbox.physics.exchange import exchange
-from oceanbox.physics.momentum import add_friction_and_wind, pressure_force, rotation
+from oceanbox.physics.continuity import keep_thickness_positive, mean_thickness, volume_transport
+from oceanbox.physics.exchange import dilute_momentum, exchange
+from oceanbox.physics.momentum import advection, friction, planetary_x, planetary_y, pressure_force, wind_acceleration
 from oceanbox.physics.state import Constants, Forcing, Ledger, State
 from oceanbox.physics.tracers import concentration, mixing_flux, tracer_flux, transport_step
 from oceanbox.stepping.booking import book
@@ -92,7 +92,8 @@ def add_drag(u: Array, rate: Array, du: Array) -> None:
     """du -= r u in interior cells."""
     rows, columns = u.shape
     for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
+        for n in range(columns - 4):
+            i = n + 2
             du[j, i] -= rate[j, i] * u[j, i]
 
 
@@ -113,35 +114,34 @@ def tendency(
     pressure_force(h, work.buoyancy, constants, work.layer_pair, du, dv)
     for k in range(layers):
         fx, fy = work.flux_x[k], work.flux_y[k]
-        volume_transport(h[k], u[k], v[k], constants, fx, fy)
-        rotation(
-            h[k],
-            u[k],
-            v[k],
-            fx,
-            fy,
-            forcing.coriolis,
-            constants,
-            work.vorticity,
-            work.kinetic,
-            work.force_x[k],
-            work.force_y[k],
-        )
+        hx, hy = work.thickness_x[k], work.thickness_y[k]
+        mean_thickness(h[k], constants, hx, hy)
+        volume_transport(h[k], hx, hy, u[k], v[k], constants, fx, fy)
+        planetary_x(hx, fy, forcing.coriolis, constants, work.force_x[k])
+        planetary_y(hx, hy, fx, forcing.coriolis, constants, work.force_y[k])
         du[k] += work.force_x[k]
         dv[k] += work.force_y[k]
+        if constants.momentum_advection:
+            advection(hx, u[k], v[k], fx, fy, constants, work.vorticity, work.kinetic, work.force_x[k], work.force_y[k])
+            du[k] += work.force_x[k]
+            dv[k] += work.force_y[k]
         ledger.limited_faces[0] += keep_thickness_positive(h[k], fx, fy, longest, constants, work.share)
-        acting = wind if k == 0 else 0.0
-        add_friction_and_wind(h[k], u[k], v[k], acting, forcing, constants, du[k], dv[k])
+        if k == 0:
+            wind_acceleration(forcing.wind_x, hx, wind, du[k])
+            wind_acceleration(forcing.wind_y, hy, wind, dv[k])
+        friction(u[k], hx, constants, du[k])
+        friction(v[k], hy, constants, dv[k])
         add_drag(u[k], forcing.drag_x, du[k])
         add_drag(v[k], forcing.drag_y, dv[k])
         content_tendency(
             h[k], heat[k], work, k, booked, constants, ledger.heat_advection_x[k], ledger.heat_advection_y[k],
             ledger.heat_mixing_x[k], ledger.heat_mixing_y[k], dheat[k],
         )  # fmt: skip
-        content_tendency(
-            h[k], salt[k], work, k, booked, constants, ledger.salt_advection_x[k], ledger.salt_advection_y[k],
-            ledger.salt_mixing_x[k], ledger.salt_mixing_y[k], dsalt[k],
-        )  # fmt: skip
+        if constants.salty:
+            content_tendency(
+                h[k], salt[k], work, k, booked, constants, ledger.salt_advection_x[k], ledger.salt_advection_y[k],
+                ledger.salt_mixing_x[k], ledger.salt_mixing_y[k], dsalt[k],
+            )  # fmt: skip
         book(ledger.volume_x[k], ledger.volume_y[k], fx, fy, booked)
         dh[k, :, :] = 0.0
         transport_step(dh[k], fx, fy, 1.0, constants)
@@ -166,17 +166,6 @@ def combine(base: Array, stages: Array, weights: Array, dt: float, out: Array) -
     for s in range(len(weights)):
         if weights[s] != 0.0:
             out += dt * weights[s] * stages[s]
-
-
-@kernel
-def dilute_momentum(u: Array, h: Array, gain: Array, along_x: int) -> None:
-    """u /= 1 + w_e dt/h on faces: entrained water comes in at rest."""
-    across = 1 - along_x
-    rows, columns = u.shape
-    for j in range(2, rows - 2):
-        for i in range(2, columns - 2):
-            entrained = gain[j, i] + gain[j - across, i - along_x]
-            u[j, i] /= 1.0 + entrained / (h[j, i] + h[j - across, i - along_x])
 
 
 @kernel
@@ -219,8 +208,8 @@ def advance_runge_kutta(
             state.thickness[0], state.heat[0], state.salt[0], state.velocity_x[0], state.velocity_y[0],
             forcing, constants, wind, dt, ledger, work.mixed_x, work.mixed_y, work.gain[0],
         )  # fmt: skip
-        if constants.linear_depth == 0.0:
-            fill_centre_edges(work.gain[0], constants.periodic_x)
-            dilute_momentum(state.velocity_x[0], state.thickness[0], work.gain[0], 1)
-            dilute_momentum(state.velocity_y[0], state.thickness[0], work.gain[0], 0)
+        mean_thickness(state.thickness[0], constants, work.thickness_x[0], work.thickness_y[0])
+        dilute_momentum(
+            state.velocity_x[0], state.velocity_y[0], work.thickness_x[0], work.thickness_y[0], work.gain[0], constants
+        )
         fill_edges(state, constants)

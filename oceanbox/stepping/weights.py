@@ -7,7 +7,7 @@ history there is.
 
 from oceanbox.compiling import kernel
 
-__all__ = ["pressure_weights", "rotation_weights", "transport_weights"]
+__all__ = ["pressure_weights", "advection_weights", "transport_weights"]
 
 BETA = 0.281105
 GAMMA = 0.088
@@ -35,8 +35,8 @@ def pressure_weights(steps_done: int) -> tuple[float, float, float, float]:
 
 
 @kernel
-def rotation_weights(steps_done: int) -> tuple[float, float, float]:
-    """Third-order Adams-Bashforth weights (23, -16, 5)/12 of rotation and advection at steps n, n-1, n-2."""
+def advection_weights(steps_done: int) -> tuple[float, float, float]:
+    """Third-order Adams-Bashforth weights (23, -16, 5)/12 of momentum advection at steps n, n-1, n-2."""
     if steps_done == 0:
         return 1.0, 0.0, 0.0
     if steps_done == 1:
