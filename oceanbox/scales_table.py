@@ -4,6 +4,7 @@ import math
 
 from oceanbox.constants import DAYS_PER_YEAR, SECONDS_PER_DAY
 from oceanbox.experiment.assembly import Setup
+from oceanbox.experiment.model import deepest_expected
 from oceanbox.experiment.scales import Scales
 
 __all__ = ["table"]
@@ -36,7 +37,7 @@ def table(setup: Setup, scales: Scales, seconds_per_step: float) -> str:
         ("deformation radius at 30 degrees", _length(scales.mid_latitude_radius, max(scales.dx, scales.dy))),
         ("Munk width (A/beta)^(1/3)", _length(scales.munk_width, scales.dx)),
         ("Stommel width r/beta", _length(scales.stommel_width, scales.dx)),
-        ("limit, gravity waves and rotation", f"{limits.waves:.0f} s (layer up to {config.numerics.deepest_layer_m:g} m)"),
+        ("limit, gravity waves and rotation", f"{limits.waves:.0f} s (layer up to {deepest_expected(setup):g} m)"),
         ("limit, viscosity", f"{limits.friction:.3g} s"),
         ("limit, lateral mixing", f"{limits.mixing:.3g} s"),
         ("limit, advection", f"{limits.flow:.3g} s"),

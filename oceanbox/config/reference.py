@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import difflib
 from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Any, get_origin
@@ -13,6 +14,7 @@ from oceanbox.config.fields import FIELD_KINDS, FieldKind
 from oceanbox.config.schema import Config
 from oceanbox.config.section import Section
 from oceanbox.config.showing import show
+from oceanbox.errors import ConfigError, Fault
 
 
 @dataclass(frozen=True)
@@ -51,6 +53,21 @@ def reference_text() -> str:
         parts.append(f"{model_word(kind)}: {(kind.__doc__ or '').strip()}")
         parts += [_block(key) for key in _keys(kind, f"{model_word(kind)}: ")]
     return "\n\n".join(parts) + "\n"
+
+
+def keys_text(start: str) -> str:
+    """The keys whose dotted name begins with, or contains, `start`, as `reference_text` shows them.
+
+    Raises ConfigError with the nearest names where there is none.
+    """
+    names = [key.key for key in reference_keys()]
+    found = [key for key in reference_keys() if key.key.startswith(start)]
+    found = found or [key for key in reference_keys() if start in key.key]
+    if not found:
+        near = difflib.get_close_matches(start, names, n=3, cutoff=0.4)
+        remedy = f"did you mean {' or '.join(near)}?" if near else "list them all with `oceanbox keys`"
+        raise ConfigError([Fault("", "", start, "must be the start or a part of a key of the configuration", remedy)])
+    return "\n\n".join(_block(key) for key in found)
 
 
 def json_schema() -> dict[str, Any]:

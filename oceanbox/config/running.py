@@ -104,7 +104,13 @@ class Numerics(Section):
         ge=0.0,
         le=48.0,
     )
-    deepest_layer_m: Real = quantity(600.0, "The thickness whose wave speed bounds the time step.", "m", gt=0.0)
+    deepest_layer_m: Real | None = quantity(
+        None,
+        "The thickness whose wave speed sets the time step, or null for twice the greatest at the start; "
+        "water that becomes deeper shortens the step.",
+        "m",
+        gt=0.0,
+    )
     thickness_flux: Literal["centred", "upwind_biased"] = choice(
         "centred", "How the thickness on a face is made from its neighbours."
     )

@@ -64,6 +64,8 @@ class Config(Section):
 
     def _depth_faults(self) -> Iterator[CrossFault]:
         deepest = self.numerics.deepest_layer_m
+        if deepest is None:
+            return
         starts = [layer.initial_thickness_m for layer in self.layers]
         depths: list[tuple[str, Any]] = [("motion.linear_about_depth_m", self.motion.linear_about_depth_m)]
         depths += [(f"layers.{index}.initial_thickness_m", start) for index, start in enumerate(starts)]
@@ -72,7 +74,7 @@ class Config(Section):
                 yield CrossFault(
                     key,
                     f"{depth:g} with numerics.deepest_layer_m {deepest:g}",
-                    "must be at most numerics.deepest_layer_m, which bounds the time step",
+                    "must be at most numerics.deepest_layer_m, which sets the time step",
                     "raise numerics.deepest_layer_m or lower this depth",
                 )
 

@@ -1,5 +1,6 @@
 """What a run will cost, from timing a few steps of the very setup; kept per machine beside the compiled code."""
 
+import contextlib
 import json
 import time
 from pathlib import Path
@@ -58,8 +59,7 @@ def seconds_per_step(setup: Setup) -> float:
     known = _known()
     if key not in known:
         known[key] = _measure(setup)
-        try:
+        # A calibration that cannot be kept is measured again next time.
+        with contextlib.suppress(OSError):
             _calibration_file().write_text(json.dumps(known, indent=1), encoding="utf-8")
-        except OSError:
-            pass  # a calibration that cannot be kept is measured again next time
     return known[key]

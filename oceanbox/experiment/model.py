@@ -16,7 +16,7 @@ from oceanbox.stepping.limits import StepLimits, step_limits
 from oceanbox.stepping.memory import Memory, empty_memory, empty_workspace
 from oceanbox.stepping.runge_kutta import STRONG_3, Tableau, advance_runge_kutta, empty_stages
 
-__all__ = ["Clock", "Model", "choose_step", "limits_for", "warmest_anomaly"]
+__all__ = ["Clock", "Model", "choose_step", "deepest_expected", "limits_for", "warmest_anomaly"]
 
 Array = NDArray[np.float64]
 # Steps divide half a day, so that windows counted in Julian years end on a step.
@@ -33,12 +33,18 @@ def warmest_anomaly(setup: Setup) -> float:
     return float(max(restored.max(), initial.max(), 1.0))
 
 
+def deepest_expected(setup: Setup) -> float:
+    """``numerics.deepest_layer_m``, or twice the greatest thickness at the start, m."""
+    named = setup.config.numerics.deepest_layer_m
+    return named or 2.0 * float(setup.grid.centres(setup.initial.thickness).sum(axis=0).max())
+
+
 def limits_for(setup: Setup) -> StepLimits:
-    """Step limits for the fastest waves this setup should ever hold: its warmest water at ``numerics.deepest_layer_m``."""
+    """Step limits for the fastest waves this setup should hold: its warmest water, as deep as it is expected to become."""
     constants, config = setup.constants, setup.config
     theta = warmest_anomaly(setup)
     buoyancy = constants.gravity * theta * (constants.expansion_abyss + 0.5 * constants.expansion_slope * theta)
-    depth = constants.linear_depth or config.numerics.deepest_layer_m
+    depth = constants.linear_depth or deepest_expected(setup)
     speed = math.sqrt(buoyancy * depth)
     crossing = 0.0 if constants.linear_depth > 0.0 else EXPECTED_FLOW / min(setup.grid.dx, setup.grid.dy)
     return step_limits(config.numerics.scheme, setup.grid, speed, crossing, constants.viscosity, constants.diffusivity)

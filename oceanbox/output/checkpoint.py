@@ -1,4 +1,4 @@
-"""Restart points: named arrays and attributes that come back bit for bit."""
+"""Restart points: named arrays and attributes that come back bit for bit, attributes that come back equal."""
 
 from __future__ import annotations
 
@@ -29,7 +29,7 @@ def save_checkpoint(
     """Write a restart point; under its final name it is either the old one or the new one, and on the disk.
 
     arrays      float64 or int64, of any shape, also 0-d or empty; names without '/'
-    attributes  text and numbers
+    attributes  text and numbers; a NaN stays a NaN, but unlike one in an array it loses its sign and payload
 
     Raises TypeError for any other type, ValueError for a name that cannot be stored.
     """

@@ -7,7 +7,7 @@ history there is.
 
 from oceanbox.compiling import kernel
 
-__all__ = ["pressure_weights", "advection_weights", "transport_weights"]
+__all__ = ["advection_weights", "pressure_weights", "transport_weights"]
 
 BETA = 0.281105
 GAMMA = 0.088
