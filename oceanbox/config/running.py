@@ -97,19 +97,15 @@ class Numerics(Section):
     scheme: Literal["forward_backward", "runge_kutta_3"] = choice("forward_backward", "The time-stepping scheme.")
     step_s: Real | None = quantity(None, "The time step, or null to take it from the stability limits.", "s", gt=0.0)
     step_safety: Real = quantity(0.85, "The share of the stability limit that is used.", "1", gt=0.0, le=1.0)
-    exchange_interval_h: Real = quantity(
-        6.0,
-        "The longest time between exchanges of the columns with air and abyss; 0 for one every step.",
-        "h",
+    exchange_interval_days: Real = quantity(
+        0.25,
+        "The longest time between exchanges of a column with air and abyss, 0 for every step.",
+        "days",
         ge=0.0,
-        le=48.0,
+        le=2.0,
     )
     deepest_layer_m: Real | None = quantity(
-        None,
-        "The thickness whose wave speed sets the time step, or null for twice the greatest at the start; "
-        "water that becomes deeper shortens the step.",
-        "m",
-        gt=0.0,
+        None, "The thickness whose wave speed sets the step, or null for twice the greatest at the start.", "m", gt=0.0
     )
     thickness_flux: Literal["centred", "upwind_biased"] = choice(
         "centred", "How the thickness on a face is made from its neighbours."

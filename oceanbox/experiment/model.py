@@ -21,7 +21,6 @@ __all__ = ["Clock", "Model", "choose_step", "deepest_expected", "limits_for", "w
 Array = NDArray[np.float64]
 # Steps divide half a day, so that windows counted in Julian years end on a step.
 HALF_DAY = 0.5 * SECONDS_PER_DAY
-SECONDS_PER_HOUR = SECONDS_PER_DAY / 24.0
 # A western boundary current with room to grow, m s-1; a faster one shortens the step when it comes.
 EXPECTED_FLOW = 1.2
 
@@ -129,7 +128,7 @@ class Model:
     @property
     def exchange_every(self) -> int:
         """Steps between exchanges of the columns with air and abyss."""
-        interval = self.setup.config.numerics.exchange_interval_h * SECONDS_PER_HOUR
+        interval = self.setup.config.numerics.exchange_interval_days * SECONDS_PER_DAY
         return max(1, math.floor(interval / self.clock.dt))
 
     def change_step(self, dt: float) -> None:
