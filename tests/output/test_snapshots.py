@@ -98,6 +98,18 @@ def test_records_left_over_from_before_a_restart_are_in_no_view_of_the_file(path
     assert findings_of_strict_cf_check(path) == ""
 
 
+def test_left_over_records_are_gone_from_view_as_soon_as_a_run_goes_on(path):
+    """Killed again before its first record, a run must not show what an earlier one had written."""
+    _write(path, 6).close()
+    resume_and_die = (
+        "import os, sys; from pathlib import Path; from oceanbox.output.snapshots import Snapshots;"
+        "snapshots = Snapshots.resume(Path(sys.argv[1]), records=2); os._exit(9)"
+    )
+    died = subprocess.run([sys.executable, "-c", resume_and_die, str(path)], check=False)
+    assert died.returncode == 9
+    assert list(read_dataset(part_of(path))["time"]) == [0.0, 10.0]
+
+
 def test_a_finished_file_passes_the_strict_check_of_the_cf_conventions(path):
     assert _write(path, 3).finish({"oceanbox_outcome": "reached the end"}) == path
     assert findings_of_strict_cf_check(path) == ""
