@@ -72,5 +72,6 @@ def kernel(function: _F) -> _F:
     ``error_model='numpy'`` removes the zero-division test that stops vectorisation.  Only the contraction part of fast
     arithmetic is allowed: the parts that assume no NaN would blind the check for a run that blows up.
     """
-    compiled: _F = numba.njit(cache=True, error_model="numpy", fastmath={"contract"}, nogil=True)(function)
+    compile_it: Any = numba.njit(cache=True, error_model="numpy", fastmath={"contract"}, nogil=True)
+    compiled: _F = compile_it(function)
     return compiled

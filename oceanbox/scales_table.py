@@ -28,6 +28,7 @@ def table(setup: Setup, scales: Scales, seconds_per_step: float) -> str:
     year = seconds_per_step * scales.steps_per_year
     years = config.equilibrium.longest_years
     evolve_years = config.evolve.duration_days / DAYS_PER_YEAR
+    pace = 1e9 * seconds_per_step / scales.cells
     rows = [
         ("grid", f"{setup.grid.nx} x {setup.grid.ny} cells of {scales.dx / 1e3:g} km x {scales.dy / 1e3:g} km"),
         ("layer at the start", f"{scales.thickness:.1f} m thick, reduced gravity up to {scales.reduced_gravity:.4f} m s-2"),
@@ -43,7 +44,7 @@ def table(setup: Setup, scales: Scales, seconds_per_step: float) -> str:
         ("limit, advection", f"{limits.flow:.3g} s"),
         ("step", f"{scales.step:.1f} s, {config.numerics.scheme}; {scales.steps_per_year:.0f} steps a year"),
         ("memory", f"{scales.memory / 2**20:.0f} MiB of fields"),
-        ("cost on this machine", f"{1e9 * seconds_per_step / scales.cells:.0f} ns per cell and step, {_duration(year)} a model year"),
+        ("cost on this machine", f"{pace:.0f} ns per cell and step, {_duration(year)} a model year"),
         ("equilibrate", f"at most {_duration(years * year)} for {years:g} years; 40 years take {_duration(40.0 * year)}"),
         ("evolve", f"{_duration(evolve_years * year)} for {config.evolve.duration_days:g} days"),
     ]  # fmt: skip

@@ -50,8 +50,12 @@ def closure(grid: Grid, ledger: Ledger, before: State, after: State) -> dict[str
     inner = {"volume_convergence", "heat_advection", "heat_mixing", "salt_advection", "salt_mixing"}
     found = {}
     for budget, (terms, storage, residual) in BUDGETS.items():
-        outer = sum(np.abs(maps[name]) for name in (*terms, storage) if name not in inner)
-        absolute = outer + sum(_through_faces(grid, *pair) for pair in faces[budget])
+        absolute = np.zeros((grid.ny, grid.nx))
+        for name in (*terms, storage):
+            if name not in inner:
+                absolute += np.abs(maps[name])
+        for pair in faces[budget]:
+            absolute += _through_faces(grid, *pair)
         missing = np.abs(maps[residual])
         whole = float(absolute.sum())
         worst = float(np.max(missing / np.where(absolute > 0.0, absolute, np.inf)))

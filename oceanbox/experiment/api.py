@@ -2,7 +2,7 @@
 
 import signal
 import threading
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Mapping
 from contextlib import contextmanager
 from pathlib import Path
 from typing import NamedTuple
@@ -102,9 +102,9 @@ class _Keeper:
         fields = {name: getattr(model, name) for name in SNAPSHOT_FIELDS}
         self._snapshots.append(model.clock.days, fields)
 
-    def finish(self) -> None:
+    def finish(self, attributes: Mapping[str, str]) -> None:
         if self._snapshots is not None:
-            self._snapshots.finish()
+            self._snapshots.finish(attributes)
 
 
 @contextmanager
@@ -141,7 +141,7 @@ def _finish(run: Run, store: Store, keeper: _Keeper, outcome: Outcome) -> xr.Dat
     provenance = provenance_of(run.model.setup.config, outcome.sentence, run.notes)
     provenance |= {name: str(value) for name, value in store.purpose.attributes().items()}
     provenance["oceanbox_ending"] = outcome.ending.value
-    keeper.finish()
+    keeper.finish(provenance)
     result = result_dataset(run, outcome, provenance)
     store.save_state(run)
     write_dataset(result, store.result)

@@ -188,10 +188,13 @@ class Model:
 
     def arrays(self) -> dict[str, Array]:
         """Everything of the model that a restart needs, by name."""
-        groups = {"state": self.state, "memory": self.memory, "ledger": self.ledger, "opening": self.opening}
-        return {
-            f"{group}__{name}": value for group, values in groups.items() for name, value in values._asdict().items()
+        groups: dict[str, dict[str, Array]] = {
+            "state": self.state._asdict(),
+            "memory": self.memory._asdict(),
+            "ledger": self.ledger._asdict(),
+            "opening": self.opening._asdict(),
         }
+        return {f"{group}__{name}": value for group, values in groups.items() for name, value in values.items()}
 
     def restore(self, arrays: Mapping[str, Array]) -> None:
         """Take over the arrays of a restart.  Raises OceanboxError if they are of another grid."""

@@ -45,8 +45,8 @@ def north_south(latitude: float) -> str:
     return f"{abs(latitude):g}°{'N' if latitude > 0 else 'S'}"
 
 
-def round_levels(low: float, high: float, about: int = 14) -> Array:
-    """Levels at round numbers that enclose a range, roughly `about` of them; steps are 1, 2 or 5 times 10^n."""
+def round_levels(low: float, high: float, about: int) -> Array:
+    """Levels at round numbers that enclose a range, at most `about` + 1 steps; steps are 1, 2 or 5 times 10^n."""
     if not high > low:
         half = max(abs(low) * 0.05, 1e-12)
         low, high = low - half, high + half

@@ -31,6 +31,10 @@ if TYPE_CHECKING:
 __all__ = ["caption", "run_name", "sentence"]
 
 _NOT_STATED = "not stated in the file"
+_EXCHANGE = (
+    "Warm water made by entrainment, destroyed by surface cooling and, if there is such a line, handed to the abyss "
+    "where the layer outcrops"
+)
 _EXACT = (
     "It is computed twice, from the currents and from the surface flux less storage; the lines fall on one another "
     "where the budget closes."
@@ -82,11 +86,8 @@ def sentence(dataset: xr.Dataset, panel: Panel) -> str:
             return f"Zonal mean of the terms of the heat budget, and northward heat transport. {_EXACT}"
         case Exchange():
             if panel.form == "per_degree":
-                return "Warm water made by entrainment and destroyed by surface cooling, per degree of latitude."
-            return (
-                "Warm water made by entrainment and destroyed by surface cooling south of each latitude, and carried "
-                "northward across it."
-            )
+                return f"{_EXCHANGE}, per degree of latitude."
+            return f"{_EXCHANGE}, south of each latitude, and carried northward across it."
         case Approach():
             return (
                 "Approach to equilibrium: thermocline depth on the equator (western eighth, mean, eastern eighth; the "

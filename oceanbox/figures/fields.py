@@ -12,6 +12,7 @@ from oceanbox.constants import DAYS_PER_YEAR, EARTH_RADIUS_M
 from oceanbox.diagnostics.geometry import Geometry
 from oceanbox.diagnostics.labelled import array_of
 from oceanbox.diagnostics.thermocline import equatorial_profile, equatorial_weights
+from oceanbox.diagnostics.transports import integral_south_of
 from oceanbox.errors import UnreadableResult
 
 if TYPE_CHECKING:
@@ -25,6 +26,7 @@ __all__ = [
     "arrows",
     "degrees_of",
     "equatorial_section",
+    "exchange_south_of",
     "series",
     "years",
     "zonal_mean",
@@ -99,6 +101,14 @@ def equatorial_section(dataset: xr.Dataset) -> Section:
         equatorial_profile(array_of(dataset, "temperature_std")[0], weights),
         equatorial_profile(array_of(dataset, "thermocline_depth_std"), weights),
     )
+
+
+def exchange_south_of(dataset: xr.Dataset) -> dict[str, Array]:
+    """Warm water made, destroyed and lost by outcrop south of each latitude, and carried across it, (ny+1,), Sv."""
+    names_in_file = ("entrainment_south_of", "transformation_south_of", "overturning")
+    found = {name: array_of(dataset, name) for name in names_in_file}
+    found["outcrop"] = integral_south_of(-array_of(dataset, "outcrop_volume"), array_of(dataset, "cell_area"))
+    return {name: values / SVERDRUP for name, values in found.items()}
 
 
 def arrows(dataset: xr.Dataset, across: int) -> Arrows:

@@ -57,22 +57,22 @@ class Grid:
     @property
     def x(self) -> Array:
         """Cell centres, eastward, (nx,), m."""
-        return (np.arange(self.nx) + 0.5) * self.dx
+        return (np.arange(self.nx, dtype=np.float64) + 0.5) * self.dx
 
     @property
     def y(self) -> Array:
         """Cell centres, northward, (ny,), m."""
-        return self.y_south + (np.arange(self.ny) + 0.5) * self.dy
+        return self.y_south + (np.arange(self.ny, dtype=np.float64) + 0.5) * self.dy
 
     @property
     def x_face(self) -> Array:
         """West and east faces, (nx+1,), m."""
-        return np.arange(self.nx + 1) * self.dx
+        return np.arange(self.nx + 1, dtype=np.float64) * self.dx
 
     @property
     def y_face(self) -> Array:
         """South and north faces, (ny+1,), m."""
-        return self.y_south + np.arange(self.ny + 1) * self.dy
+        return self.y_south + np.arange(self.ny + 1, dtype=np.float64) * self.dy
 
     @property
     def latitude(self) -> Array:
@@ -100,7 +100,7 @@ class Grid:
 
     def coriolis_at_corners(self) -> Array:
         """f on corner rows, ghost rows included, (ny + 2*HALO,), s-1."""
-        rows = np.arange(self.ny + 2 * HALO) - HALO
+        rows = np.arange(self.ny + 2 * HALO, dtype=np.float64) - HALO
         return self.coriolis(self.y_south + rows * self.dy)
 
     # Moving between the plain arrays of files and forcing, and the compute arrays with ghost cells.

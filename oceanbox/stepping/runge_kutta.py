@@ -66,7 +66,14 @@ def empty_stages(grid: Grid, layers: int, tableau: Tableau) -> Stages:
     """Room for the stages of ``tableau``."""
     many = (len(tableau.b), layers, *grid.shape)
     one = (layers, *grid.shape)
-    return Stages(*(np.zeros(many) for _ in range(5)), State(*(np.zeros(one) for _ in range(5))))
+    return Stages(
+        thickness=np.zeros(many),
+        heat=np.zeros(many),
+        salt=np.zeros(many),
+        velocity_x=np.zeros(many),
+        velocity_y=np.zeros(many),
+        stage=State(*(np.zeros(one) for _ in State._fields)),
+    )
 
 
 @kernel
@@ -193,8 +200,9 @@ def advance_runge_kutta(
             combine(state.velocity_x, stages.velocity_x, tableau.a[s], dt, stage.velocity_x)
             combine(state.velocity_y, stages.velocity_y, tableau.a[s], dt, stage.velocity_y)
             fill_edges(stage, constants)
+            wind = wind_fraction(time + tableau.c[s] * dt, constants)
             tendency(
-                stage, forcing, constants, wind_fraction(time + tableau.c[s] * dt, constants), dt, tableau.b[s] * dt, ledger, work,
+                stage, forcing, constants, wind, dt, tableau.b[s] * dt, ledger, work,
                 stages.thickness[s], stages.heat[s], stages.salt[s], stages.velocity_x[s], stages.velocity_y[s],
             )  # fmt: skip
         combine(state.thickness, stages.thickness, tableau.b, dt, state.thickness)

@@ -31,6 +31,7 @@ _EXCHANGE_LABELS = {
     "entrainment_south_of": "made",
     "transformation_south_of": "destroyed",
     "overturning": "carried north",
+    "outcrop": "outcrop",
 }
 
 
@@ -58,16 +59,21 @@ def heat_budget(ax: Axes, dataset: xr.Dataset, options: HeatBudget) -> Axes:
 
 
 def exchange(ax: Axes, dataset: xr.Dataset, options: Exchange) -> Axes:
-    """Warm water made, destroyed and carried northward (Sv)."""
+    """Warm water made, destroyed, lost where the layer outcrops, and carried northward (Sv).
+
+    The outcrop has a line only where there is one; what is carried is left out of the rates per degree.
+    """
     place = fields.degrees_of(Geometry.of(dataset))
+    rates = fields.exchange_south_of(dataset)
+    per_degree = options.form == "per_degree"
     mark_zero(ax)
     for (name, label), line in zip(_EXCHANGE_LABELS.items(), LINES, strict=False):
-        values = array_of(dataset, name) / fields.SVERDRUP
-        if options.form == "south_of_latitude":
-            ax.plot(place.y_face, values, label=label, **line._asdict())
+        if name == "outcrop" and not rates[name].any():
+            continue
+        if not per_degree:
+            ax.plot(place.y_face, rates[name], label=label, **line._asdict())
         elif name != "overturning":
-            ax.plot(place.y, np.diff(values) / np.diff(place.y_face), label=label, **line._asdict())
-    per_degree = options.form == "per_degree"
+            ax.plot(place.y, np.diff(rates[name]) / np.diff(place.y_face), label=label, **line._asdict())
     label_y(ax, "Warm water (Sv per degree)" if per_degree else "Warm water (Sv)")
     legend_above(ax, frame=ax)
     label_latitude(ax, "x", place.y_face[0], place.y_face[-1])

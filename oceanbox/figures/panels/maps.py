@@ -35,7 +35,7 @@ _FASTER_THAN = 0.04  # of the key's speed; slower arrows would be dots
 def thermocline_map(ax: Axes, dataset: xr.Dataset, options: ThermoclineMap) -> Axes:
     """Thermocline depth (m) in colour, currents of the top layer as arrows."""
     depth = array_of(dataset, "thermocline_depth")
-    levels = _levels(depth, options.shallowest_m, options.deepest_m)
+    levels = _levels(depth, options.shallowest_m, options.deepest_m, about=14)
     _colour_map(ax, dataset, depth, levels, DEEP_IS_DARK, "Thermocline depth (m)")
     if options.arrows == "current":
         _draw_arrows(ax, fields.arrows(dataset, options.arrows_across))
@@ -45,7 +45,8 @@ def thermocline_map(ax: Axes, dataset: xr.Dataset, options: ThermoclineMap) -> A
 def temperature_map(ax: Axes, dataset: xr.Dataset, options: TemperatureMap) -> Axes:
     """Surface temperature (degC) in colour, the edge of the cold tongue as a line."""
     temperature = array_of(dataset, "temperature")[0]
-    levels = _levels(temperature, options.coldest_degC, options.warmest_degC)
+    # Finer than depth: a cold tongue of a few kelvin must show beside the contrast from tropics to pole.
+    levels = _levels(temperature, options.coldest_degC, options.warmest_degC, about=26)
     _colour_map(ax, dataset, temperature, levels, WARM_IS_LIGHT, "Surface temperature (°C)")
     edge = tongue_edge(dataset) if options.outline == "cold_tongue" else float("nan")
     geometry = Geometry.of(dataset)
@@ -69,10 +70,10 @@ def tongue_edge(dataset: xr.Dataset) -> float:
     return warm_pool_temperature(profile, cells.window) - contrast
 
 
-def _levels(field: Array, low: float | None, high: float | None) -> Array:
+def _levels(field: Array, low: float | None, high: float | None, about: int) -> Array:
     smallest = float(field.min()) if low is None else low
     largest = float(field.max()) if high is None else high
-    return round_levels(smallest, largest)
+    return round_levels(smallest, largest, about)
 
 
 def _colour_map(ax: Axes, dataset: xr.Dataset, field: Array, levels: Array, colours: str, label: str) -> None:
@@ -93,12 +94,19 @@ def _colour_map(ax: Axes, dataset: xr.Dataset, field: Array, levels: Array, colo
     label_latitude(ax, "y", place.y_face[0], place.y_face[-1])
     figure = ax.get_figure(root=False)
     if figure is not None:
-        stride = int(np.ceil(levels.size * _TICK_POINTS / width_points(ax)))
-        ticks = levels[::stride]
+        ticks = _ticks(levels, round(width_points(ax) / _TICK_POINTS))
         bar = figure.colorbar(mesh, ax=ax, location="bottom", pad=0.02, aspect=36, ticks=ticks)
         bar.minorticks_off()
         bar.set_label(label)
         bar.ax.tick_params(length=2.0)
+
+
+def _ticks(levels: Array, at_most: int) -> Array:
+    """The levels that get a number: multiples of 1, 2, 5 or 10 steps, at most so many."""
+    step = levels[1] - levels[0]
+    multiples = np.round(levels / step).astype(int)
+    stride = next((n for n in (1, 2, 5, 10, 20) if levels.size / n <= at_most), 50)
+    return levels[multiples % stride == 0]
 
 
 def _draw_arrows(ax: Axes, currents: fields.Arrows) -> None:
