@@ -58,6 +58,13 @@ def test_colours_cover_the_field_unless_a_scale_is_given(result: xr.Dataset) -> 
     assert (given.vmin, given.vmax, given.extend) == (100.0, 200.0, "both")
 
 
+def test_numbers_of_a_colour_bar_are_round_multiples(result: xr.Dataset) -> None:
+    ax = drawn(result, "kind: temperature_map, coldest_degC: 5, warmest_degC: 28")
+    bar = mesh_of(ax).colorbar
+    assert bar is not None
+    assert list(bar.get_ticks()) == [6, 8, 10, 12, 14, 16, 18, 20, 22, 24, 26, 28]
+
+
 def test_arrows_point_along_the_mean_current_with_the_root_of_its_speed(result: xr.Dataset) -> None:
     ax = drawn(result, "kind: thermocline_map, arrows_across: 10")
     quiver = next(item for item in ax.collections if isinstance(item, Quiver))
@@ -141,7 +148,16 @@ def test_exchange_is_plotted_in_sverdrups(result: xr.Dataset) -> None:
     ax = drawn(result, "kind: exchange")
     assert y_of(ax, "made")[-1] == pytest.approx(float(result["entrainment_total"]) / 1e6, rel=ROUND_OFF)
     assert y_of(ax, "destroyed")[-1] == pytest.approx(float(result["transformation_total"]) / 1e6, rel=ROUND_OFF)
-    np.testing.assert_allclose(y_of(ax, "carried north"), result["overturning"] / 1e6, rtol=ROUND_OFF)
+    np.testing.assert_allclose(y_of(ax, "northward"), result["overturning"] / 1e6, rtol=ROUND_OFF)
+
+
+def test_an_outcrop_has_a_line_where_there_is_one(result: xr.Dataset) -> None:
+    lost = y_of(drawn(result, "kind: exchange"), "outcrop")
+    assert lost[-1] == pytest.approx(-float((result["outcrop_volume"] * result["cell_area"]).sum()) / 1e6, rel=1e-12)
+    without = result.assign(outcrop_volume=0 * result["outcrop_volume"])
+    labels = [line.get_label() for line in drawn(without, "kind: exchange").lines]
+    assert "outcrop" not in labels
+    assert "made" in labels
 
 
 def test_exchange_per_degree_sums_to_the_total(result: xr.Dataset) -> None:

@@ -30,7 +30,7 @@ _TERM_LABELS = {
 _EXCHANGE_LABELS = {
     "entrainment_south_of": "made",
     "transformation_south_of": "destroyed",
-    "overturning": "carried north",
+    "overturning": "northward",
     "outcrop": "outcrop",
 }
 
