@@ -6,6 +6,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 from matplotlib import rcParams
+from matplotlib.font_manager import FontProperties
+from matplotlib.textpath import text_to_path
 from matplotlib.ticker import FuncFormatter, MaxNLocator, MultipleLocator
 from matplotlib.transforms import ScaledTranslation
 from numpy.typing import NDArray
@@ -33,7 +35,7 @@ Array = NDArray[np.float64]
 _LABEL_POINTS = 26.0  # from the axes to the inner edge of the label of the y axis
 _MARGIN_POINTS = 48.0  # beside axes, for the numbers and the label of the y axis
 _LETTER_POINTS = 14.0  # kept free for the letter of the panel
-_LETTER_WIDTH = 0.58  # of a lower-case letter, in units of the size of the font
+_LEGEND_PAD = 0.4  # between the legend and the corner it stands at, in units of the size of its font
 _GAP = 0.12  # between the axes of a stack, in units of their relative heights
 _DEGREE_STEPS = (1.0, 2.0, 5.0, 10.0, 15.0, 20.0, 30.0)
 
@@ -126,7 +128,7 @@ def legend_above(ax: Axes, frame: Axes) -> None:
     _, labels = ax.get_legend_handles_labels()
     room = width_points(frame) - _LETTER_POINTS
     columns = next((n for n in range(len(labels), 1, -1) if _legend_points(labels, n) <= room), 1)
-    ax.legend(loc="lower right", bbox_to_anchor=(1.0, 1.0), borderaxespad=0.4, ncol=columns)
+    ax.legend(loc="lower right", bbox_to_anchor=(1.0, 1.0), borderaxespad=_LEGEND_PAD, ncol=columns)
 
 
 def set_letter(ax: Axes, letter: str) -> None:
@@ -135,12 +137,14 @@ def set_letter(ax: Axes, letter: str) -> None:
 
 
 def _legend_points(labels: list[str], columns: int) -> float:
-    """Width of a legend, filled column by column, by the mean width of letters; in points."""
+    """Width of a legend with its labels in so many columns, points."""
     size = rcParams["legend.fontsize"]
-    handle = rcParams["legend.handlelength"] + rcParams["legend.handletextpad"] + rcParams["legend.columnspacing"]
-    rows = -(-len(labels) // columns)
-    longest = (max(len(label) for label in labels[start : start + rows]) for start in range(0, len(labels), rows))
-    return float(sum(size * (handle + _LETTER_WIDTH * letters) for letters in longest))
+    font = FontProperties(size=size)
+    widths = [text_to_path.get_text_width_height_descent(label, font, ismath=False)[0] for label in labels]
+    longest = [float(column.max()) for column in np.array_split(widths, columns)]
+    handle = rcParams["legend.handlelength"] + rcParams["legend.handletextpad"]
+    between = (len(longest) - 1) * rcParams["legend.columnspacing"]
+    return float(sum(longest) + size * (len(longest) * handle + between + _LEGEND_PAD))
 
 
 def _degree_step(extent: float, at_most: int) -> float:
