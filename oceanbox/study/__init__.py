@@ -1,0 +1,1 @@
+"""Studies: many runs from one file, their collected table, thresholds, memory and sensitivities."""
