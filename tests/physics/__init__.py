@@ -1,0 +1,1 @@
+"""Laws of the physics, each with its source and a tolerance that is derived."""
