@@ -132,7 +132,7 @@ def _equilibrate(options: argparse.Namespace) -> int:
     _warn(options)
     _announce_compilation()
     with reporting() as report:
-        finished = equilibrate(options.config, options.into, report)
+        finished = equilibrate(options.config, options.into, report=report)
     return _report_finished(finished)
 
 

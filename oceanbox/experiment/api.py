@@ -187,16 +187,20 @@ def _run(
 
 
 def equilibrate(
-    config: Config | Path | str, into: Path | str | None = None, report: Callable[[Progress], None] = silent
+    config: Config | Path | str,
+    into: Path | str | None = None,
+    start: Path | str | None = None,
+    report: Callable[[Progress], None] = silent,
 ) -> Finished:
-    """Run ``config`` (or the file of one) to equilibrium, or to the longest time it allows.
+    """Run ``config`` (or the file of one) to equilibrium, or to the longest time it allows, from its initial state or from
+    the state file ``start``.
 
     The result is written into the folder ``into`` (default ``results/<name>``) and returned.  A finished result of the same
     configuration is returned at once; an interrupted run goes on where it was.
 
     Raises ConfigError, ResultConflict, UnstableRun, InterruptedRun.
     """
-    return _run("equilibrate", config, equilibrium_plan, into, None, report)
+    return _run("equilibrate", config, equilibrium_plan, into, Path(start) if start is not None else None, report)
 
 
 def evolve(
