@@ -7,7 +7,16 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import Literal
 
-from oceanbox.config.section import CrossFault, Real, Section, Whole, choice, quantity
+from oceanbox.config.section import CrossFault, Real, Section, Whole, choice, quantity, subsection
+
+
+class Acceleration(Section):
+    """Extrapolation of the approach to equilibrium before the windows that are judged."""
+
+    lead_years: Real = quantity(1.0, "The model time before the first extrapolation.", "year", gt=0.0)
+    cycle_years: Real = quantity(0.5, "The model time between extrapolations.", "year", gt=0.0)
+    memory: Whole = quantity(8, "The number of earlier cycles an extrapolation uses.", "1", ge=1, le=30)
+    longest_years: Real = quantity(60.0, "The model time after which the run goes on plainly.", "year", gt=0.0)
 
 
 class Equilibrium(Section):
@@ -34,6 +43,10 @@ class Equilibrium(Section):
         gt=0.0,
     )
     windows_in_a_row: Whole = quantity(2, "The number of windows in a row for which all this must hold.", "1", ge=1)
+
+    acceleration: Acceleration | None = subsection(
+        Acceleration, "How the approach to equilibrium is shortened, or null for plain stepping."
+    )
 
     def cross_faults(self) -> Iterator[CrossFault]:
         """The search is long enough to hold the windows it asks for."""

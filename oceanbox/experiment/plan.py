@@ -16,7 +16,7 @@ class Plan:
     """Intervals and ends, s.
 
     ``windows_repeat``: windows of length ``window`` follow one another from the start and each is judged; otherwise one
-    window ends with the run.
+    window ends with the run.  ``accelerated``: extrapolated towards equilibrium before the first window.
     """
 
     end: float
@@ -25,6 +25,7 @@ class Plan:
     sample: float
     series: float
     snapshot: float = math.inf
+    accelerated: bool = False
 
     def window_start(self) -> float:
         """Start of the window of a run with one window, s."""
@@ -39,6 +40,7 @@ def equilibrium_plan(config: Config) -> Plan:
         end=window * max(1, math.floor(longest / window + 1e-9)),
         window=window,
         windows_repeat=True,
+        accelerated=config.equilibrium.acceleration is not None,
         sample=config.output.sample_interval_days * SECONDS_PER_DAY,
         series=config.output.series_interval_days * SECONDS_PER_DAY,
     )

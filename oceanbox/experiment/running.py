@@ -23,6 +23,7 @@ from oceanbox.experiment.model import Model, choose_step
 from oceanbox.experiment.outcome import Ending, Outcome
 from oceanbox.experiment.plan import SECONDS_PER_YEAR, Plan
 from oceanbox.experiment.recorder import Recorder
+from oceanbox.experiment.spinup import SpinUp
 from oceanbox.physics.state import State
 from oceanbox.stepping.limits import step_limits
 
@@ -31,6 +32,8 @@ __all__ = ["Observer", "Progress", "Run"]
 Array = NDArray[np.float64]
 # The step is shortened when the fastest wave leaves less than this margin to the limit.
 LIMIT_MARGIN = 0.95
+# Spin-up ends when its drift is this multiple of what still counts as equilibrium.
+NEAR_EQUILIBRIUM = 1.0
 
 
 @dataclass(frozen=True)
@@ -71,6 +74,7 @@ class Progressing:
     snapshots: int = 0
     good_windows: int = 0
     window_open: bool = False
+    judged_from: float = 0.0  # s; windows are counted from here
 
 
 class Run:
@@ -88,6 +92,8 @@ class Run:
         self.notes: list[str] = []
         # Wave speed and crossing rate for which the step was last checked.
         self._checked: tuple[float, float] = (0.0, 0.0)
+        acceleration = model.setup.config.equilibrium.acceleration
+        self.spin_up = SpinUp(model, acceleration.memory) if acceleration and plan.accelerated else None
         self._copy_good_state()
 
     # -- the loop -----------------------------------------------------------------------------------------------------
@@ -112,8 +118,10 @@ class Run:
     def _next_time(self) -> float:
         plan, counts = self.plan, self.counts
         due = [plan.end, (counts.samples + 1) * plan.sample, (counts.points + 1) * plan.series]
-        if plan.windows_repeat:
-            due.append((counts.windows + 1) * plan.window)
+        if self._spinning_up():
+            due.append(self._cycle_end())
+        elif plan.windows_repeat:
+            due.append(self._window_end())
         elif not counts.window_open:
             due.append(plan.window_start())
         if plan.snapshot < math.inf:
@@ -143,7 +151,10 @@ class Run:
             self.recorder.close_interval()
         if plan.snapshot < math.inf and self._is_due(counts.snapshots * plan.snapshot):
             self._take_snapshot()
-        if plan.windows_repeat and self._is_due((counts.windows + 1) * plan.window):
+        if self._spinning_up():
+            if self._is_due(self._cycle_end()):
+                self._end_cycle()
+        elif plan.windows_repeat and self._is_due(self._window_end()):
             return self._end_window()
         if not plan.windows_repeat and not counts.window_open and self._is_due(plan.window_start()):
             counts.window_open = True
@@ -151,6 +162,11 @@ class Run:
         if self._is_due(plan.end):
             self._ensure_sampled()
             days = self.model.clock.days
+            if plan.windows_repeat:
+                years = self.model.clock.seconds / SECONDS_PER_YEAR
+                return Outcome(
+                    Ending.NOT_IN_EQUILIBRIUM, f"not in equilibrium after {years:g} years: {self._measures()}"
+                )
             return Outcome(Ending.COMPLETED, f"ran for the {days:g} days asked for")
         return None
 
@@ -162,6 +178,42 @@ class Run:
         """A window shorter than the sample interval still needs one sample."""
         if self.recorder.fields.count == 0:
             self.recorder.sample()
+
+    # -- spin-up ------------------------------------------------------------------------------------------------------
+
+    def _spinning_up(self) -> bool:
+        return self.spin_up is not None and not self.spin_up.counts.ended
+
+    def _cycle_end(self) -> float:
+        """End of the cycle of the acceleration that is under way; cycle 0 is the lead, s."""
+        assert self.spin_up is not None
+        asked = self.model.setup.config.equilibrium.acceleration
+        assert asked is not None
+        return (asked.lead_years + self.spin_up.counts.cycles * asked.cycle_years) * SECONDS_PER_YEAR
+
+    def _end_cycle(self) -> None:
+        """Extrapolate, or end the spin-up: then the windows that are judged begin."""
+        spin_up, asked = self.spin_up, self.model.setup.config.equilibrium
+        assert spin_up is not None and asked.acceleration is not None
+        told = spin_up.end_cycle(asked.acceleration.cycle_years / 10.0)
+        if told:
+            self.notes.append(f"day {self.model.clock.days:.0f}: {told}")
+        years = self.model.clock.seconds / SECONDS_PER_YEAR
+        near = spin_up.drift < NEAR_EQUILIBRIUM * min(asked.volume_drift_per_decade, asked.heat_drift_per_decade)
+        if near or years >= asked.acceleration.longest_years:
+            spin_up.counts.ended = True
+        if spin_up.counts.ended:
+            self.counts.judged_from = self.model.clock.seconds
+            counts = spin_up.counts
+            self.notes.append(
+                f"day {self.model.clock.days:.0f}: spin-up ended after {counts.cycles} cycles; extrapolations added "
+                f"{counts.volume_added:.4g} m3 and {counts.heat_added:.4g} J, outside every window that is judged"
+            )
+        self.recorder.open_window()
+        self._copy_good_state()
+
+    def _window_end(self) -> float:
+        return self.counts.judged_from + (self.counts.windows + 1) * self.plan.window
 
     # -- equilibrium --------------------------------------------------------------------------------------------------
 
@@ -190,9 +242,8 @@ class Run:
                 f"in equilibrium after {years:g} years, all measures held for {counts.good_windows} windows of "
                 f"{asked.window_years:g} years: {self._measures()}",
             )
-        if self._is_due(plan.end):
-            return Outcome(Ending.NOT_IN_EQUILIBRIUM, f"not in equilibrium after {years:g} years: {self._measures()}")
-        self.recorder.open_window()
+        if not self._is_due(plan.end):
+            self.recorder.open_window()
         return None
 
     def _measures(self) -> str:
@@ -279,7 +330,8 @@ class Run:
 
     def checkpoint_arrays(self) -> dict[str, Array]:
         """All arrays that a restart needs."""
-        return self.model.arrays() | self.recorder.arrays()
+        spin_up = self.spin_up.arrays() if self._spinning_up() and self.spin_up else {}
+        return self.model.arrays() | self.recorder.arrays() | spin_up
 
     def checkpoint_attributes(self) -> dict[str, str | int | float]:
         """All numbers and texts that a restart needs; floats keep every bit."""
@@ -294,6 +346,7 @@ class Run:
             "total_steps": self.model.total_steps,
             "opened_at": self.model.opened_at,
             "checked": list(self._checked),
+            "spin_up": self.spin_up.record() if self.spin_up else None,
         }
         # json writes the shortest text that reads back as the same float.
         return {"run": json.dumps(record)}
@@ -312,6 +365,8 @@ class Run:
         self.model.total_steps = record["total_steps"]
         self.model.opened_at = record["opened_at"]
         self._checked = tuple(record["checked"])
+        if self.spin_up is not None:
+            self.spin_up.restore(arrays, record["spin_up"])
         self._copy_good_state()
 
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from oceanbox.names.variable import Attributes, Variable
 
-CALENDAR = "noleap"
+CALENDAR = "julian"
 TIME_UNITS = "days since 0001-01-01 00:00:00"
 
 _PLANE = "distance on an idealised plane"
