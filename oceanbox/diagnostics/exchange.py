@@ -24,7 +24,10 @@ Array = NDArray[np.float64]
 
 
 class HeatExchange(NamedTuple):
-    """Integrals of the surface heat flux, W; losses are positive. `imbalance` is |net| / (gain + loss)."""
+    """Integrals of the surface heat flux, W; losses are positive.
+
+    `imbalance` is |gain - loss + outcrop| / (gain + loss): what the outcrop hands to the abyss is heat lost too.
+    """
 
     tropical_gain: float
     gain: float
@@ -38,8 +41,8 @@ def relative_imbalance(difference: float, size: float) -> float:
     return abs(difference) / size if size > 0.0 else float("nan")
 
 
-def heat_exchange(surface_heat_flux: Array, cell_area: Array, geometry: Geometry) -> HeatExchange:
-    """Integrals of a surface heat flux (ny, nx), W m-2, positive into the ocean. Trusts its input."""
+def heat_exchange(surface_heat_flux: Array, outcrop_heat: Array, cell_area: Array, geometry: Geometry) -> HeatExchange:
+    """Integrals of a surface heat flux and of the outcrop's (never positive), (ny, nx), W m-2. Trusts its input."""
     flux = surface_heat_flux * cell_area
     gain = float(np.maximum(flux, 0.0).sum())
     loss_by_row = np.maximum(-flux, 0.0).sum(axis=1)
@@ -50,7 +53,7 @@ def heat_exchange(surface_heat_flux: Array, cell_area: Array, geometry: Geometry
         gain=gain,
         loss=loss,
         high_latitude_loss=float(high @ loss_by_row),
-        imbalance=relative_imbalance(gain - loss, gain + loss),
+        imbalance=relative_imbalance(gain - loss + float((outcrop_heat * cell_area).sum()), gain + loss),
     )
 
 
@@ -60,7 +63,8 @@ def heat_exchange_of(dataset: xr.Dataset) -> xr.Dataset:
     The tropical gain is net. The imbalance is NaN where no heat passes the surface. Raises UnreadableResult
     if a variable is missing or not finite.
     """
-    found = heat_exchange(array_of(dataset, "surface_heat_flux"), array_of(dataset, "cell_area"), Geometry.of(dataset))
+    flux, outcrop = array_of(dataset, "surface_heat_flux"), array_of(dataset, "outcrop_heat")
+    found = heat_exchange(flux, outcrop, array_of(dataset, "cell_area"), Geometry.of(dataset))
     return scalars(
         {
             "tropical_heat_gain": found.tropical_gain,
@@ -73,20 +77,22 @@ def heat_exchange_of(dataset: xr.Dataset) -> xr.Dataset:
 
 
 def volume_exchange_of(dataset: xr.Dataset) -> xr.Dataset:
-    """Warm water made (by each closure and in all) and destroyed, m3 s-1, and their imbalance; 0-d variables.
+    """Warm water made (by each closure and in all), destroyed and handed over, m3 s-1, and their imbalance; 0-d variables.
 
-    The imbalance is NaN where no water is made. Raises UnreadableResult if a variable is missing or not
+    What the outcrop hands to the abyss counts among the losses. The imbalance is NaN where no water is made. Raises UnreadableResult if a variable is missing or not
     finite.
     """
     area = array_of(dataset, "cell_area")
     made = {f"{term}_total": float((array_of(dataset, term) * area).sum()) for term in ENTRAINMENT_TERMS}
     total = sum(made.values())
     destroyed = -float((array_of(dataset, "transformation") * area).sum())
+    handed_over = -float((array_of(dataset, "outcrop_volume") * area).sum())
     return scalars(
         made
         | {
+            "outcrop_total": handed_over,
             "entrainment_total": total,
             "transformation_total": destroyed,
-            "exchange_imbalance": relative_imbalance(total - destroyed, total),
+            "exchange_imbalance": relative_imbalance(total - destroyed - handed_over, total),
         }
     )

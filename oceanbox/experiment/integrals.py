@@ -3,6 +3,8 @@
 import numpy as np
 from numpy.typing import NDArray
 
+from oceanbox.diagnostics.exchange import heat_exchange
+from oceanbox.diagnostics.geometry import Geometry
 from oceanbox.equilibrium import WindowMeans
 from oceanbox.experiment.model import Model
 from oceanbox.physics.state import Ledger
@@ -10,8 +12,6 @@ from oceanbox.physics.state import Ledger
 __all__ = ["contents", "exchange_series", "kinetic_energy", "window_means"]
 
 Array = NDArray[np.float64]
-TROPICS_DEG = 10.0
-HIGH_LATITUDES_DEG = 30.0
 
 
 def contents(model: Model) -> dict[str, float]:
@@ -48,20 +48,21 @@ def entrainment(model: Model, amounts: Ledger, seconds: float) -> float:
     return _volume_flux(model, total + amounts.entrainment_shoaling + amounts.entrainment_prescribed, seconds)
 
 
-def exchange_series(model: Model, amounts: Ledger, seconds: float) -> dict[str, float]:
+def exchange_series(model: Model, geometry: Geometry, amounts: Ledger, seconds: float) -> dict[str, float]:
     """Heat and volume exchange of the stretch which ``amounts`` books: the scalars of the time series."""
     grid = model.grid
-    heating = heating_map(model, amounts, seconds) * grid.cell_area
-    latitude = np.abs(grid.latitude)[:, None]
-    absolute = float(np.abs(heating).sum())
+    outcrop = grid.centres(amounts.outcrop_heat) * (model.setup.water.heat / seconds)
+    area = np.full((grid.ny, grid.nx), grid.cell_area)
+    heat = heat_exchange(heating_map(model, amounts, seconds), outcrop, area, geometry)
     return {
-        "tropical_heat_gain": float((heating * (latitude < TROPICS_DEG)).sum()),
-        "total_heat_gain": float(heating[heating > 0.0].sum()),
-        "total_heat_loss": float(-heating[heating < 0.0].sum()),
-        "applied_high_latitude_loss": float(-(np.minimum(heating, 0.0) * (latitude > HIGH_LATITUDES_DEG)).sum()),
-        "heat_imbalance": float(abs(heating.sum())) / absolute if absolute > 0.0 else 0.0,
+        "tropical_heat_gain": heat.tropical_gain,
+        "total_heat_gain": heat.gain,
+        "total_heat_loss": heat.loss,
+        "applied_high_latitude_loss": heat.high_latitude_loss,
+        "heat_imbalance": heat.imbalance,
         "entrainment_total": entrainment(model, amounts, seconds),
         "transformation_total": -_volume_flux(model, amounts.transformation, seconds),
+        "outcrop_total": -_volume_flux(model, amounts.outcrop_volume, seconds),
     }
 
 

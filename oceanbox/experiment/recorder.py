@@ -28,8 +28,8 @@ class Recorder:
         self.model = model
         grid = model.grid
         equator = -grid.coriolis_origin / grid.beta if grid.beta != 0.0 else float("nan")
-        geometry = Geometry(grid.x_face, grid.y_face, equator)
-        self.probe = Probe(geometry, model.setup.config.output.cold_tongue_contrast_K)
+        self.geometry = Geometry(grid.x_face, grid.y_face, equator)
+        self.probe = Probe(self.geometry, model.setup.config.output.cold_tongue_contrast_K)
         self.fields = Moments()
         self.scalars = Moments()
         self.interval = Moments()
@@ -51,7 +51,7 @@ class Recorder:
         model = self.model
         seconds = model.clock.seconds - self._marked_at
         booked = Ledger(*(now - then for now, then in zip(model.ledger, self._mark, strict=True)))
-        point = exchange_series(model, booked, seconds)
+        point = exchange_series(model, self.geometry, booked, seconds)
         point |= {name: float(value) for name, value in self.interval.mean.items()}
         for name, value in point.items():
             self.series.setdefault(name, []).append(value)

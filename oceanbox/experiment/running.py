@@ -32,8 +32,8 @@ __all__ = ["Observer", "Progress", "Run"]
 Array = NDArray[np.float64]
 # The step is shortened when the fastest wave leaves less than this margin to the limit.
 LIMIT_MARGIN = 0.95
-# Spin-up ends when its drift is this multiple of what still counts as equilibrium.
-NEAR_EQUILIBRIUM = 1.0
+# Spin-up ends when its drift is this share of what still counts as equilibrium.
+NEAR_EQUILIBRIUM = 0.5
 
 
 @dataclass(frozen=True)

@@ -25,8 +25,8 @@ def _longitude(name: str, dim: str, what: str) -> Variable:
 
 
 def _time(name: str, what: str, dims: tuple[str, ...], attributes: Attributes = ()) -> Variable:
-    calendar = ("calendar", CALENDAR)
-    return Variable(name, what, TIME_UNITS, dims, "coordinate", "time", attributes=(*attributes, calendar))
+    calendar = (("calendar", CALENDAR), ("units_metadata", "leap_seconds: none"))
+    return Variable(name, what, TIME_UNITS, dims, "coordinate", "time", attributes=(*attributes, *calendar))
 
 
 COORDINATES: tuple[Variable, ...] = (
