@@ -1,0 +1,1 @@
+"""Runs as a whole: interrupted, killed, finished, unstable."""
