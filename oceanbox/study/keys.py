@@ -8,7 +8,7 @@ from oceanbox.config import Config
 from oceanbox.config.allowed import entry_of
 from oceanbox.config.section import FIELD_UNIT, Section
 
-__all__ = ["KeyWords", "describe"]
+__all__ = ["KeyWords", "describe", "value_at"]
 
 
 class KeyWords(NamedTuple):
@@ -39,3 +39,14 @@ def describe(config: Config, key: str) -> KeyWords:
         words = KeyWords(unit, entry.sentence.rstrip("."))
         here = getattr(here, part)
     return words
+
+
+def value_at(config: Config, key: str) -> Any:
+    """The value of a dotted key, None where it leads nowhere."""
+    here: Any = config
+    for part in key.split("."):
+        if isinstance(here, tuple):
+            here = here[int(part)] if part.isdecimal() and int(part) < len(here) else None
+        else:
+            here = getattr(here, part, None)
+    return here
