@@ -31,17 +31,11 @@ def first_ways(study: Study, base: Config) -> list[Case]:
 
     base    the configuration that `study.base` names, with `study.changes`
 
-    Raises ConfigError with what is wrong with any of them, or if the measure is no scalar of a result.
+    Raises ConfigError with what is wrong with any of them.
     """
-    from oceanbox.names import in_group
-
-    spec = _spec(study)
     faults: list[Fault] = []
-    if spec.measure not in in_group("scalar"):
-        remedy = "take a scalar of a result file, such as thermocline_depth_equator_mean"
-        faults.append(Fault("", "branch.measure", spec.measure, "no such scalar", remedy))
     cases: list[Case] = []
-    values = branch_parameters(spec)
+    values = branch_parameters(_spec(study))
     for number, value in enumerate([*values, *values[-2::-1]]):
         try:
             cases.append(_case(study, base, number, value, cases[-1] if cases else None))

@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
+from difflib import get_close_matches
 from typing import Annotated, Any, ClassVar, Literal
 
 from pydantic import Discriminator, Field, Tag
 
+from oceanbox import names
 from oceanbox.config.section import (
     CrossFault,
     Real,
@@ -19,6 +21,7 @@ from oceanbox.config.section import (
 )
 
 __all__ = [
+    "UNRECORDED",
     "BranchSpec",
     "Changes",
     "ElasticitiesSpec",
@@ -36,6 +39,20 @@ Changes = dict[str, Any]
 FEWEST_POINTS = 8
 """Points below which a three-parameter fit says little about its own uncertainty."""
 
+UNRECORDED = (
+    "entrainment_upwelling_total",
+    "entrainment_diffusive_total",
+    "entrainment_shoaling_total",
+    "entrainment_prescribed_total",
+    "exchange_imbalance",
+    "sverdrup_transport",
+    "gyre_transport",
+    "western_boundary_transport",
+    "wave_speed",
+    "equatorial_radius",
+)
+"""Scalars of a result that a run does not record as series."""
+
 Name = Annotated[str, Field(pattern=r"^[a-z0-9_-]+$")]
 
 
@@ -52,6 +69,20 @@ def _measures(sentence: str) -> Any:
 def _twice(names: tuple[str, ...]) -> str | None:
     """The first name that occurs more than once."""
     return next((name for name, count in Counter(names).items() if count > 1), None)
+
+
+def _measure_faults(key: str, measures: Sequence[str], excluded: Sequence[str] = ()) -> Iterator[CrossFault]:
+    """Measures that are no scalars of a result, or excluded ones."""
+    known = [name for name in names.in_group("scalar") if name not in excluded]
+    for index, measure in enumerate(measures):
+        if measure not in known:
+            close = get_close_matches(measure, known, n=2, cutoff=0.5)
+            yield CrossFault(
+                key.format(index),
+                measure,
+                "must be a scalar of a result" + (" that is recorded as a series" if excluded else ""),
+                f"did you mean {' or '.join(close)}?" if close else f"take one of {', '.join(known)}",
+            )
 
 
 class BranchSpec(Section):
@@ -79,7 +110,8 @@ class BranchSpec(Section):
     )
 
     def cross_faults(self) -> Iterator[CrossFault]:
-        """The range is not empty, and refining makes a step smaller."""
+        """The range is not empty, refining makes a step smaller, the measure exists."""
+        yield from _measure_faults("measure", [self.measure])
         if self.highest <= self.lowest:
             yield CrossFault(
                 "highest",
@@ -127,12 +159,22 @@ class SwitchSpec(Section):
     duration_days: Real = quantity(3650.0, "The length of each run.", "days", gt=0.0)
     series_interval_days: Real = quantity(30.0, "The time between points of the recorded series.", "days", gt=0.0)
     measures: tuple[str, ...] = _measures("The scalars whose adjustment is recorded and fitted.")
+    control: Literal["run", "none"] = choice(
+        "run", "Whether a run in which nothing changes shows the drift and the noise of the start."
+    )
 
     def cross_faults(self) -> Iterator[CrossFault]:
-        """Names differ, and every series is long enough to be fitted."""
-        twice = _twice(tuple(case.name for case in self.switches))
+        """Names differ, every series is long enough to be fitted, the measures are recorded."""
+        yield from _measure_faults("measures.{}", self.measures, UNRECORDED)
+        taken = ("start", "control")
+        twice = _twice((*taken, *(case.name for case in self.switches)))
         if twice is not None:
-            yield CrossFault("switches", f"the name {twice} more than once", "names must differ", "rename one of them")
+            yield CrossFault(
+                "switches",
+                f"the name {twice} more than once",
+                f"names must differ, also from {' and '.join(taken)}",
+                "rename one of them",
+            )
         for index, case in enumerate(self.switches):
             duration = case.duration_days or self.duration_days
             interval = case.series_interval_days or self.series_interval_days
@@ -182,7 +224,8 @@ class ElasticitiesSpec(Section):
     )
 
     def cross_faults(self) -> Iterator[CrossFault]:
-        """No key twice."""
+        """No key twice; measures that exist."""
+        yield from _measure_faults("measures.{}", self.measures)
         twice = _twice(self.keys)
         if twice is not None:
             yield CrossFault("keys", f"{twice} more than once", "keys must differ", "remove one of them")
@@ -203,7 +246,8 @@ class SobolIndicesSpec(Section):
     confidence: Real = quantity(0.95, "The confidence level of the intervals.", "1", gt=0.0, lt=1.0)
 
     def cross_faults(self) -> Iterator[CrossFault]:
-        """No key twice; a power of two, for which the sequence is balanced."""
+        """No key twice; measures that exist; a power of two, for which the sequence is balanced."""
+        yield from _measure_faults("measures.{}", self.measures)
         twice = _twice(tuple(item.key for item in self.ranges))
         if twice is not None:
             yield CrossFault("ranges", f"{twice} more than once", "keys must differ", "remove one of the ranges")
