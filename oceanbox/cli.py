@@ -23,6 +23,7 @@ BAD_CONFIG = 2
 NOT_IN_EQUILIBRIUM = 3
 UNSTABLE = 4
 INTERRUPTED = 5
+CASES_FAILED = 6
 
 EXIT_CODES = """\
 exit codes:
@@ -31,7 +32,8 @@ exit codes:
   2  the configuration or the command line cannot be used
   3  not in equilibrium in the time allowed (the result is written)
   4  unstable (the last sound state is kept)
-  5  interrupted (the same command goes on)"""
+  5  interrupted (the same command goes on)
+  6  some cases of a study failed (all others are done)"""
 
 
 def _parser() -> argparse.ArgumentParser:
@@ -69,6 +71,13 @@ def _parser() -> argparse.ArgumentParser:
         type=Path,
         help="state.nc of another run of the same grid to start from",
     )
+
+    added = command("study", _study, "run whatever of a study is missing, and collect all of it")
+    added.add_argument("study", metavar="STUDY", type=Path, help="a study in YAML")
+    added.add_argument("--into", metavar="DIR", type=Path, help="folder of the study (default: results/<name>)")
+    added.add_argument("--workers", metavar="N", type=_count, help="worker processes (default: one for each processor)")
+    added.add_argument("--scheduler", metavar="ADDRESS", help="run on the workers of this dask.distributed scheduler")
+    added.add_argument("--dry", action="store_true", help="list the cases and the predicted cost; run nothing")
 
     added = command("figures", _figures, "figures of a result, from its file alone")
     added.add_argument("result", metavar="RESULT", type=Path, help="result.nc of a run")
@@ -145,6 +154,51 @@ def _evolve(options: argparse.Namespace) -> int:
     with reporting() as report:
         finished = evolve(options.config, options.into, options.start, report)
     return _report_finished(finished)
+
+
+def _count(text: str) -> int:
+    if not text.isdecimal() or int(text) < 1:
+        raise argparse.ArgumentTypeError(f"got {text}; must be a whole number >= 1; leave it out for one per processor")
+    return int(text)
+
+
+def _study(options: argparse.Namespace) -> int:
+    if options.dry:
+        return _dry_study(options)
+    from oceanbox.study.run import run_study
+    from oceanbox.study_progress import study_reporting
+    from oceanbox.terminal import tell
+
+    _announce_compilation()
+    try:
+        with study_reporting() as report:
+            outcome = run_study(options.study, options.into, options.workers, options.scheduler, report, tell)
+    except KeyboardInterrupt:
+        tell("interrupted; what was running is saved, and the same command goes on")
+        raise
+    for line in (*outcome.failures(), *outcome.findings):
+        tell(line)
+    print(f"{outcome.into}: {outcome}")
+    for path in outcome.paths:
+        print(path)
+    if outcome.failed:
+        return CASES_FAILED
+    return NOT_IN_EQUILIBRIUM if outcome.unsettled else DONE
+
+
+def _dry_study(options: argparse.Namespace) -> int:
+    from oceanbox.study.engines.local import default_workers
+    from oceanbox.study.run import dry_run
+    from oceanbox.study_progress import duration
+
+    _announce_compilation()
+    found = dry_run(options.study, options.into)
+    for case, status in zip(found.cases, found.statuses, strict=True):
+        print(f"{status.state.value:<8} {case.identity[:16]}  {case.name}")
+    workers = options.workers or default_workers()
+    cost = duration(found.total_seconds(workers))
+    print(f"{found.left} of {len(found.cases)} cases to run: about {cost} on {workers} workers, by {found.basis}")
+    return DONE
 
 
 def _figures(options: argparse.Namespace) -> int:

@@ -13,6 +13,7 @@ from pathlib import Path
 import oceanbox
 from oceanbox.config import Config, identity
 from oceanbox.constants import EARTH_RADIUS_M
+from oceanbox.experiment.results import REFERENCES
 from oceanbox.output.files import whole_file
 from oceanbox.output.provenance import source_commit
 from oceanbox.study.field_words import field_words, spoken
@@ -51,6 +52,7 @@ def methods_text(study: Study, base: Config, statuses: Sequence[CaseStatus]) -> 
         "What was varied": _varied(study, base),
         "What became of the cases": _outcomes(statuses),
         "Versions": _versions(base, statuses),
+        "References": f"{REFERENCES}.",
     }
     blocks = [f"Methods of the study {study.name}", textwrap.fill(study.description.strip(), _WIDTH)]
     for heading, text in paragraphs.items():

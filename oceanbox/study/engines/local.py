@@ -18,6 +18,7 @@ from oceanbox.study.working import Answer, Task, run_here
 __all__ = ["LocalEngine", "default_workers"]
 
 ATTEMPTS = 3
+ASK_SECONDS = 0.5
 THREADS = ("NUMBA_NUM_THREADS", "OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS", "BLIS_NUM_THREADS")
 
 
@@ -42,9 +43,14 @@ def _one_thread_each() -> Iterator[None]:
                 os.environ[name] = value
 
 
+_stop_asked = threading.Event()
+"""In a worker process: set by a SIGTERM that arrived while no run was there to answer it."""
+
+
 def _begin() -> None:
     """Set a new worker up: it dies with its parent, and Ctrl-C is for the parent to deal with."""
     signal.signal(signal.SIGINT, signal.SIG_IGN)
+    signal.signal(signal.SIGTERM, lambda *_: _stop_asked.set())
     parent = parent_process()
     assert parent is not None
 
@@ -53,6 +59,13 @@ def _begin() -> None:
         os._exit(1)  # at once: an orphan must not go on writing where the next run of the study will write
 
     threading.Thread(target=follow, daemon=True).start()
+
+
+def _run(task: Task) -> Answer:
+    """Run a task, unless the worker was asked to stop before it began."""
+    if _stop_asked.is_set():
+        return Answer(task.key, "interrupted", "the study was interrupted")
+    return run_here(task)
 
 
 class _Lane:
@@ -71,7 +84,7 @@ class _Lane:
         self.task = task
         for _ in range(ATTEMPTS):
             try:
-                self.future = self._living().submit(run_here, task)
+                self.future = self._living().submit(_run, task)
                 return
             except BrokenProcessPool:  # it died while it had nothing to do
                 self.drop()
@@ -153,18 +166,23 @@ class LocalEngine:
     def stop(self) -> list[Answer]:
         """Ask each worker to save a checkpoint and end its case; wait until they have."""
         busy = [lane for lane in self._lanes if lane.future is not None]
-        for lane in busy:
-            with contextlib.suppress(ProcessLookupError):
-                os.kill(lane.pid, signal.SIGTERM)
-        answers = []
-        for lane in busy:
-            lane.attempts = ATTEMPTS  # whatever dies now stays dead
-            assert lane.future is not None
-            wait([lane.future])
-            answer = self._answer(lane)
-            if answer is not None:
-                answers.append(answer)
-        return answers
+        # Asked again and again: a run that is just being set up is not listening yet.
+        while running := [lane for lane in busy if lane.future is not None and not lane.future.done()]:
+            for lane in running:
+                with contextlib.suppress(ProcessLookupError):
+                    os.kill(lane.pid, signal.SIGTERM)
+            wait([lane.future for lane in running if lane.future is not None], ASK_SECONDS)
+        return [self._last_answer(lane) for lane in busy]
+
+    def _last_answer(self, lane: _Lane) -> Answer:
+        """What became of the task of a lane; a task whose worker died of being stopped was interrupted."""
+        task, future = lane.task, lane.future
+        assert task is not None and future is not None
+        lane.task, lane.future = None, None
+        if future.exception() is not None:
+            lane.drop()
+            return Answer(task.key, "interrupted", "its worker process died")
+        return future.result()
 
     def close(self) -> None:
         """End the worker processes."""
