@@ -327,7 +327,7 @@ CASES: dict[str, tuple[str, list[str]]] = {
         "name: a\nlayers: [{initial_thickness_m: 700}]\nnumerics: {deepest_layer_m: 600}\n",
         [
             "text:2: layers.0.initial_thickness_m: got 700 with numerics.deepest_layer_m 600; "
-            "must be at most numerics.deepest_layer_m, which bounds the time step; "
+            "must be at most numerics.deepest_layer_m, which sets the time step; "
             "raise numerics.deepest_layer_m or lower this depth"
         ],
     ),
