@@ -10,7 +10,7 @@ from typing import Generic
 import numpy as np
 from numpy.typing import NDArray
 
-from oceanbox.study.following import Branch, Direction, Equilibrium, Point, State, find, follow
+from oceanbox.study.following import Branch, Direction, Equilibrium, Point, State, follow
 from oceanbox.study.jumps import Jump, JumpRule, Nature, refine, suspected_jumps
 
 __all__ = ["HysteresisLoop", "TracedBranches", "Way", "trace"]
@@ -107,27 +107,25 @@ def _way(
         first = fresh[0]
         done.add(first.before.parameter)
         jump = refine(equilibrium, first, refine_to)
-        if jump.nature is Nature.PROVOKED and jump.probes[-1].parameter == first.after.parameter:
-            provoked.append(jump)
-            branch = _resumed(equilibrium, branch, first, jump)
-            jumps = suspected_jumps(branch, rule)
-        else:
+        crossed = _crossed(branch, first, jump)
+        if crossed is None:
             refined.append(jump)
+            continue
+        provoked.append(jump)
+        rest = [point.parameter for point in branch.points[len(crossed) :]]
+        branch = follow(equilibrium, rest, direction, crossed)
+        jumps = suspected_jumps(branch, rule)
     return Way(branch, tuple(refined), tuple(provoked))
 
 
-def _resumed(
-    equilibrium: Equilibrium[State], branch: Branch[State], suspected: Jump[State], refined: Jump[State]
-) -> Branch[State]:
-    """The branch up to a provoked jump, across it by the small steps, and from there on as before."""
+def _crossed(branch: Branch[State], suspected: Jump[State], refined: Jump[State]) -> list[Point[State]] | None:
+    """The points up to and across a jump that was provoked, the last one found by small steps; None for any other jump."""
     places = [point.parameter for point in branch.points]
-    begin, end = places.index(suspected.before.parameter), places.index(suspected.after.parameter)
-    crossing = [suspected.before, *refined.probes]  # none of them has jumped, so their order is that of the way
-    known = list(branch.points[: begin + 1])
-    for parameter in places[begin + 1 : end]:
-        passed = [point for point in crossing if abs(point.parameter - places[begin]) <= abs(parameter - places[begin])]
-        known.append(find(equilibrium, parameter, passed[-1]))
-    return follow(equilibrium, places[end + 1 :], branch.direction, [*known, refined.probes[-1]])
+    known = list(branch.points[: places.index(suspected.before.parameter) + 1])
+    across = places[len(known)]
+    if refined.nature is not Nature.PROVOKED or refined.probes[-1].parameter != across:
+        return None
+    return [*known, refined.probes[-1]]
 
 
 def _loops(up: Way[State], down: Way[State]) -> list[HysteresisLoop[State]]:
