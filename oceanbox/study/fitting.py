@@ -87,23 +87,26 @@ def fit_relaxation(times: ArrayLike, values: ArrayLike, first: float, interval: 
             f"times and values: got shapes {t.shape} and {y.shape}; one dimension and more than {PARAMETERS} points "
             "are needed; record a longer series or a denser one"
         )
-    if float(np.abs(y - first).max()) == 0.0:
+    # In units of itself, because the search looks at absolute sizes.
+    scale = float(np.abs(y - first).max())
+    if scale == 0.0:
         return _without_fit(Trust.NO_CHANGE, y, first)
-    fitted = _least_squares(t, y, first, interval)
+    fitted = _least_squares(t, (y - first) / scale, interval)
     if fitted is None:
         return _without_fit(Trust.NOT_EXPONENTIAL, y, first)
-    e_folding, final, covariance = fitted
+    e_folding, change, covariance = fitted
+    final = first + scale * change
     left = y - relaxation(t, e_folding, first, final, interval)
     correlation = _autocorrelation(left)
     widening = math.sqrt((1.0 + correlation) / (1.0 - correlation)) if correlation > 0.0 else 1.0
-    log_error, final_error = (widening * float(error) for error in np.sqrt(np.diag(covariance)))
+    log_error, change_error = (widening * float(error) for error in np.sqrt(np.diag(covariance)))
     return Relaxation(
-        trust=_trust(t, e_folding, log_error, abs(final - first), final_error),
+        trust=_trust(t, e_folding, log_error, abs(change), change_error),
         first=first,
         e_folding=e_folding,
         e_folding_error=e_folding * log_error,
         final=final,
-        final_error=final_error,
+        final_error=scale * change_error,
         noise=math.sqrt(float((left**2).sum()) / (len(t) - PARAMETERS)),
         autocorrelation=correlation,
     )
@@ -126,37 +129,35 @@ def crossing_time(times: ArrayLike, values: ArrayLike, first: float, final: floa
     return float(np.interp(share, done[after - 1 : after + 1], t[after - 1 : after + 1]))
 
 
-def _least_squares(t: Array, y: Array, first: float, interval: float) -> tuple[float, float, Array] | None:
-    """E-folding time, final value, covariance of the logarithm of the one and of the other; None if nothing fits."""
+def _least_squares(t: Array, y: Array, interval: float) -> tuple[float, float, Array] | None:
+    """E-folding time, final value, covariance of the logarithm of the one and of the other; None if nothing fits.
+
+    y    the change since time zero, at most 1 in size
+    """
     from scipy.optimize import OptimizeWarning, curve_fit
 
     def model(at: Array, log_time: float, final: float) -> Array:
-        return relaxation(at, math.exp(log_time), first, final, interval)
+        return relaxation(at, math.exp(log_time), 0.0, final, interval)
 
     # The logarithm keeps the time positive and makes its error nearly symmetric.
     logs = np.linspace(math.log(0.1 * _spacing(t)), math.log(LONGEST * t[-1]), TRIALS)
-    start = min((_best_final(t, y, first, float(log), interval) for log in logs), key=lambda trial: trial[2])
+    start = min((_best_final(t, y, float(log), interval) for log in logs), key=lambda trial: trial[2])
     bounds = ([logs[0], -np.inf], [logs[-1], np.inf])
     try:
         with warnings.catch_warnings():
             warnings.simplefilter("error", OptimizeWarning)  # no covariance: the series does not tell the two apart
-            found, covariance = curve_fit(model, t, y, p0=start[:2], bounds=bounds, x_scale=_scales(y, first))
+            found, covariance = curve_fit(model, t, y, p0=start[:2], bounds=bounds)
     except (RuntimeError, OptimizeWarning):
         return None
     return math.exp(float(found[0])), float(found[1]), np.asarray(covariance, dtype=np.float64)
 
 
-def _best_final(t: Array, y: Array, first: float, log_time: float, interval: float) -> tuple[float, float, float]:
+def _best_final(t: Array, y: Array, log_time: float, interval: float) -> tuple[float, float, float]:
     """For one e-folding time the final value, in which the model is linear, and the sum of squares that is left."""
-    grown = 1.0 - _decay(t, math.exp(log_time), interval)
-    change = float(grown @ (y - first)) / float(grown @ grown)
-    left = y - first - change * grown
-    return log_time, first + change, float(left @ left)
-
-
-def _scales(y: Array, first: float) -> tuple[float, float]:
-    """Typical sizes of the two parameters, so that the search does not depend on the unit of the values."""
-    return 1.0, float(np.abs(y - first).max())
+    grown = relaxation(t, math.exp(log_time), 0.0, 1.0, interval)
+    final = float(grown @ y) / float(grown @ grown)
+    left = y - final * grown
+    return log_time, final, float(left @ left)
 
 
 def _spacing(t: Array) -> float:
