@@ -90,11 +90,11 @@ def largest_amplification(scheme: str, grid: Grid, wave_speed: float, f: float, 
 
 
 def _wave_limit(scheme: str, grid: Grid, wave_speed: float, f: float) -> float:
-    """Bisection on the step to a relative width of 3e-4."""
+    """Bisection on the step to a relative width of 1e-4."""
     gravity = 2.0 * wave_speed * math.hypot(1.0 / grid.dx, 1.0 / grid.dy)
     longest = 3.0 / max(gravity, f, 1e-30)
     low, high = 0.0, longest
-    while high - low > 3e-4 * high:
+    while high - low > 1e-4 * high:
         middle = 0.5 * (low + high)
         if largest_amplification(scheme, grid, wave_speed, f, middle) <= NEUTRAL:
             low = middle
