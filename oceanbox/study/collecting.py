@@ -14,6 +14,7 @@ import xarray as xr
 
 from oceanbox import names
 from oceanbox.constants import DAYS_PER_YEAR
+from oceanbox.output.coordinates import BOUNDS_DIM
 from oceanbox.output.files import COMPRESSION, is_coordinate, read_dataset, whole_file
 from oceanbox.study.places import Place, place_of_cases
 from oceanbox.study.plan import Case
@@ -83,8 +84,9 @@ class _Gathered:
             self._maps[name][number] = field.values
 
     def _keep_coordinates(self, result: xr.Dataset, dims: Sequence[str]) -> None:
+        # bounds belong to their coordinate; those of the window do not say where a field lies
         for name, variable in result.coords.items():
-            if variable.dims and set(variable.dims) <= set(dims):
+            if variable.dims and set(variable.dims) <= {*dims, BOUNDS_DIM} and set(variable.dims) & set(dims):
                 self.coordinates.setdefault(str(name), variable.variable)
 
     def variables(self) -> dict[str, xr.Variable]:
@@ -96,10 +98,16 @@ class _Gathered:
 
 
 def _attributes(name: str) -> dict[str, str]:
-    """CF attributes of a variable of a result; the window of each case is its own, so the methods speak of time."""
+    """CF attributes of a variable of a result.  Each case has its own window, which no single coordinate can tell, so the
+    mean over it is told in words.
+    """
     entry = names.lookup(name)
-    methods = (entry.cell_methods or "").replace("window:", "time:")
-    return replace(entry, cell_methods=methods or None).cf_attributes()
+    window = "window: mean"
+    methods = entry.cell_methods or ""
+    if methods.startswith(window):
+        entry = replace(entry, sign="; ".join(filter(None, (entry.sign, "mean over the window of each case"))))
+    kept = methods.removeprefix(window).removeprefix("window: standard_deviation").strip()
+    return replace(entry, cell_methods=kept or None).cf_attributes()
 
 
 def _texts(place: Place, cases: Sequence[Case], statuses: Sequence[CaseStatus], into: Path) -> dict[str, xr.Variable]:

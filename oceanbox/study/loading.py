@@ -103,6 +103,7 @@ def load_study(path: str | Path) -> LoadedStudy:
             cases = cases_of(study, base)
     except ConfigError as error:
         faults += [_relocated(study, source, loaded.source, fault) for fault in error.faults]
+    faults += [replace(fault, location=source.locate("fields")) for fault in _grid_faults(study, cases)]
     if faults:
         raise _sorted(faults)
     return LoadedStudy(study, path, source, base, loaded.source, tuple(cases))
@@ -179,6 +180,18 @@ def _field_faults(study: Study) -> list[Fault]:
             remedy = f"did you mean {' or '.join(close)}?" if close else "take a name from a result file"
             faults.append(Fault("", f"fields.{index}", name, "must be a field of a result file", remedy))
     return faults
+
+
+def _grid_faults(study: Study, cases: Iterable[Case]) -> list[Fault]:
+    """Fields of different grids cannot stand in one variable."""
+    grids = {
+        (basin.width_km, basin.south_km, basin.north_km, basin.cells_x, basin.cells_y)
+        for basin in (case.config.basin for case in cases)
+    }
+    if not study.fields or len(grids) < 2:
+        return []
+    remedy = "remove fields, or keep the basin and its cells the same in all cases"
+    return [Fault("", "fields", "cases on different grids", "fields are collected from one grid only", remedy)]
 
 
 def _relocated(study: Study, source: StudySource, base_source: Source, fault: Fault) -> Fault:

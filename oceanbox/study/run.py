@@ -23,7 +23,7 @@ from oceanbox.study.methods import write_methods
 from oceanbox.study.predicting import Forecast, forecast
 from oceanbox.study.status import CaseStatus, State, status_of
 
-__all__ = ["StudyOutcome", "default_folder", "dry_run", "run_study"]
+__all__ = ["StudyOutcome", "default_folder", "dry_run", "run_study", "study_attributes"]
 
 
 @dataclass(frozen=True)
@@ -110,7 +110,7 @@ def run_study(
         _keep_study(loaded, folder)
         with _engine(folder, workers, scheduler) as engine:
             statuses = execute(loaded.cases, folder, engine, report)
-        dataset = collect(loaded.study, loaded.cases, folder, _attributes(loaded, statuses))
+        dataset = collect(loaded.study, loaded.cases, folder, study_attributes(loaded, statuses))
         return _written(loaded, folder, dataset, statuses)
 
 
@@ -134,7 +134,8 @@ def _keep_study(loaded: LoadedStudy, folder: Path) -> None:
         part.write_text(loaded.path.read_text(encoding="utf-8"), encoding="utf-8")
 
 
-def _attributes(loaded: LoadedStudy, statuses: list[CaseStatus]) -> dict[str, str]:
+def study_attributes(loaded: LoadedStudy, statuses: list[CaseStatus]) -> dict[str, str]:
+    """Global attributes of what is collected: how the study was made, so that it can be made again."""
     study = loaded.study
     done = sum(status.state is State.DONE for status in statuses)
     attributes = global_attributes(
