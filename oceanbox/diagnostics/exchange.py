@@ -77,10 +77,10 @@ def heat_exchange_of(dataset: xr.Dataset) -> xr.Dataset:
 
 
 def volume_exchange_of(dataset: xr.Dataset) -> xr.Dataset:
-    """Warm water made (by each closure and in all), destroyed and handed over, m3 s-1, and their imbalance; 0-d variables.
+    """Warm water made, destroyed and handed over, m3 s-1, and their imbalance; 0-d variables.
 
-    What the outcrop hands to the abyss counts among the losses. The imbalance is NaN where no water is made. Raises UnreadableResult if a variable is missing or not
-    finite.
+    Made by each closure and in all. What the outcrop hands to the abyss counts among the losses. The imbalance is NaN where
+    no water is made. Raises UnreadableResult if a variable is missing or not finite.
     """
     area = array_of(dataset, "cell_area")
     made = {f"{term}_total": float((array_of(dataset, term) * area).sum()) for term in ENTRAINMENT_TERMS}

@@ -1,5 +1,7 @@
 """Basin integrals of a stretch of a run, from the ledger: for the time series and for the judgement of equilibrium."""
 
+from typing import NamedTuple
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -9,7 +11,7 @@ from oceanbox.equilibrium import WindowMeans
 from oceanbox.experiment.model import Model
 from oceanbox.physics.state import Ledger
 
-__all__ = ["contents", "exchange_series", "kinetic_energy", "window_means"]
+__all__ = ["Exchanged", "contents", "exchange_series", "exchanged", "kinetic_energy", "window_means"]
 
 Array = NDArray[np.float64]
 
@@ -32,7 +34,7 @@ def kinetic_energy(model: Model) -> float:
     return float((0.5 * model.thickness * mean).sum()) * model.grid.cell_area * model.setup.water.density
 
 
-def heating_map(model: Model, amounts: Ledger, seconds: float) -> Array:
+def heating_map(model: Model, amounts: "Exchanged | Ledger", seconds: float) -> Array:
     """Mean surface heat flux of the stretch, (ny, nx), W m-2."""
     total = amounts.heat_prescribed + amounts.heat_restoring
     return model.grid.centres(total) * (model.setup.water.heat / seconds)
@@ -42,13 +44,32 @@ def _volume_flux(model: Model, entry: Array, seconds: float) -> float:
     return float(model.grid.centres(entry).sum()) * model.grid.cell_area / seconds
 
 
-def entrainment(model: Model, amounts: Ledger, seconds: float) -> float:
+def entrainment(model: Model, amounts: "Exchanged | Ledger", seconds: float) -> float:
     """W_e by all closures, m3 s-1."""
     total = amounts.entrainment_upwelling + amounts.entrainment_diffusive
     return _volume_flux(model, total + amounts.entrainment_shoaling + amounts.entrainment_prescribed, seconds)
 
 
-def exchange_series(model: Model, geometry: Geometry, amounts: Ledger, seconds: float) -> dict[str, float]:
+class Exchanged(NamedTuple):
+    """The part of a ledger that the time series need, each (ny+4, nx+4)."""
+
+    entrainment_upwelling: Array
+    entrainment_diffusive: Array
+    entrainment_shoaling: Array
+    entrainment_prescribed: Array
+    transformation: Array
+    outcrop_volume: Array
+    heat_prescribed: Array
+    heat_restoring: Array
+    outcrop_heat: Array
+
+
+def exchanged(ledger: Ledger) -> Exchanged:
+    """The present entries of the ledger, not copies."""
+    return Exchanged(*(getattr(ledger, name) for name in Exchanged._fields))
+
+
+def exchange_series(model: Model, geometry: Geometry, amounts: Exchanged, seconds: float) -> dict[str, float]:
     """Heat and volume exchange of the stretch which ``amounts`` books: the scalars of the time series."""
     grid = model.grid
     outcrop = grid.centres(amounts.outcrop_heat) * (model.setup.water.heat / seconds)

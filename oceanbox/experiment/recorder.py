@@ -7,10 +7,9 @@ from numpy.typing import NDArray
 
 from oceanbox.diagnostics.geometry import Geometry
 from oceanbox.diagnostics.probe import Probe
-from oceanbox.experiment.integrals import contents, exchange_series
+from oceanbox.experiment.integrals import Exchanged, contents, exchange_series, exchanged
 from oceanbox.experiment.model import Model
 from oceanbox.experiment.sampling import Moments, sample_fields
-from oceanbox.physics.state import Ledger, empty_ledger
 
 __all__ = ["Recorder"]
 
@@ -35,7 +34,7 @@ class Recorder:
         self.interval = Moments()
         self.series: dict[str, list[float]] = {}
         self.times: list[float] = []
-        self._mark: Ledger = empty_ledger(grid, model.state.thickness.shape[0])
+        self._mark = Exchanged(*(np.zeros(grid.shape) for _ in Exchanged._fields))
         self._marked_at = model.clock.seconds
 
     def sample(self) -> None:
@@ -50,20 +49,20 @@ class Recorder:
         """Append a point to the series: interval means of what was sampled, and what the ledger booked meanwhile."""
         model = self.model
         seconds = model.clock.seconds - self._marked_at
-        booked = Ledger(*(now - then for now, then in zip(model.ledger, self._mark, strict=True)))
+        booked = Exchanged(*(now - then for now, then in zip(exchanged(model.ledger), self._mark, strict=True)))
         point = exchange_series(model, self.geometry, booked, seconds)
         point |= {name: float(value) for name, value in self.interval.mean.items()}
         for name, value in point.items():
             self.series.setdefault(name, []).append(value)
         self.times.append(model.clock.days)
-        for mark, now in zip(self._mark, model.ledger, strict=True):
+        for mark, now in zip(self._mark, exchanged(model.ledger), strict=True):
             mark[...] = now
         self._marked_at = model.clock.seconds
         self.interval = Moments()
 
     def open_window(self) -> None:
         """Start a new window: empty moments, empty books, the running series interval kept."""
-        for mark, now in zip(self._mark, self.model.ledger, strict=True):
+        for mark, now in zip(self._mark, exchanged(self.model.ledger), strict=True):
             mark -= now
         self.model.open_books()
         self.fields = Moments()

@@ -81,7 +81,12 @@ _TEXTS: dict[str, tuple[str, Callable[[Visit], str]]] = {
     "status": ("what became of the case", lambda visit: visit.status.state.value),
     "reason": ("why the case failed", lambda visit: visit.status.reason),
     "outcome": ("how the run ended, in its own words", lambda visit: visit.status.outcome),
-    "result_path": ("result file, from the folder of the study", lambda visit: visit.result_path),
+    "ending": ("how the run ended", lambda visit: visit.status.ending),
+    "started_from": ("folder of the case it started from", lambda visit: visit.status.started_from),
+    "result_path": (
+        "result file, from the folder of the study",
+        lambda visit: "" if visit.failed else visit.result_path,
+    ),
 }
 _NUMBERS: dict[str, tuple[str, str, Callable[[Visit], float]]] = {
     "years": ("model time that the run took", "year", lambda visit: visit.years),

@@ -2,7 +2,7 @@
 
 Flux-limited advection: Sweby 1984, SIAM J. Num. Anal. 21, 995; Koren 1993 (both from memory).  Written out for a cell that loses
 the share s_k of its water through outflow face k, the new value is a weighted mean of the cell and its four neighbours as long
-as sum_k s_k (2 - s_k) <= 1, for which sum_k s_k <= 1/2 is enough (derived).
+as sum_k s_k (2 - s_k) <= 1, for which sum_k s_k <= 1/2 is enough; without Courant correction sum_k 2 s_k <= 1 (derived).
 """
 
 from typing import Any, NamedTuple
@@ -37,16 +37,31 @@ class Flow(NamedTuple):
     transport_x: Array
     transport_y: Array
 
-    def outflow_share(self) -> Array:
-        """Share of its water that each cell loses through its faces in a step, (ny, nx)."""
+    def outflow_shares(self) -> Array:
+        """Shares of its water that each cell loses through its four faces in a step, (4, ny, nx)."""
         out_x, out_y = STEP / self.grid.dx, STEP / self.grid.dy
         U, V = self.grid.x_faces(self.transport_x), self.grid.y_faces(self.transport_y)
-        leaving = out_x * (np.maximum(U[:, 1:], 0.0) + np.maximum(-U[:, :-1], 0.0))
-        leaving += out_y * (np.maximum(V[1:], 0.0) + np.maximum(-V[:-1], 0.0))
-        return leaving / self.grid.centres(self.thickness)
+        eastward, westward = out_x * np.maximum(U[:, 1:], 0.0), out_x * np.maximum(-U[:, :-1], 0.0)
+        northward, southward = out_y * np.maximum(V[1:], 0.0), out_y * np.maximum(-V[:-1], 0.0)
+        return np.stack([eastward, westward, northward, southward]) / self.grid.centres(self.thickness)
+
+    def outflow_share(self) -> Array:
+        """Share of its water that each cell loses in a step, (ny, nx)."""
+        return np.asarray(self.outflow_shares().sum(axis=0))
 
     def scaled(self, factor: float) -> "Flow":
         return self._replace(transport_x=factor * self.transport_x, transport_y=factor * self.transport_y)
+
+    def at_the_limit(self, courant_step: float) -> "Flow":
+        """The flow scaled until sum_k s_k (2 - s_k), or sum_k 2 s_k without Courant correction, is 0.99 in the worst cell."""
+        shares = self.outflow_shares()
+        once, squared = shares.sum(axis=0), (shares**2).sum(axis=0)
+        moving = once > EPS
+        if not moving.any():
+            return self
+        once, squared = once[moving], squared[moving] * (courant_step > 0.0)
+        # The smaller root k of 2 k once - k^2 squared = 0.99, written without cancellation.
+        return self.scaled(float((0.99 / (once + np.sqrt(once**2 - 0.99 * squared))).min()))
 
     def limited(self) -> "Flow":
         """The flow after the limiter of outflow."""
@@ -114,20 +129,19 @@ def test_a_uniform_value_stays_uniform_in_any_flow(flow: Flow, value: float, cou
 @EXAMPLES
 @given(flows(), numbers(NY, NX), st.sampled_from([0.0, STEP]))
 def test_limited_advection_makes_no_new_extremum(flow: Flow, values: Array, courant_step: float) -> None:
-    """When no cell loses more than half its water: cell by cell, within the range of the cell and its four neighbours.
+    """As long as sum_k s_k (2 - s_k) <= 1: cell by cell, within the range of the cell and its four neighbours.
 
-    Round-off as above, with at least half the water kept.
+    Round-off as above: at that limit, too, at least a tenth of the water stays.
     """
-    share = float(flow.outflow_share().max())
-    flow = flow.scaled(min(1.0, 0.5 / share) if share > 0.0 else 1.0)
+    flow = flow.at_the_limit(courant_step)
     flow = flow._replace(constants=flow.constants._replace(centred_tracers=False))
     wide = flow.grid.embed_centres(values)
     shifts = [(0, 0), (0, 1), (0, -1), (1, 0), (-1, 0)]
     inside = slice(HALO, -HALO)
     around = np.stack([np.roll(wide, shift, axis=(0, 1))[inside, inside] for shift in shifts])
     after = flow.carry(values, courant_step)
-    assert (after <= around.max(axis=0) + 40 * EPS).all()
-    assert (after >= around.min(axis=0) - 40 * EPS).all()
+    assert (after <= around.max(axis=0) + 200 * EPS).all()
+    assert (after >= around.min(axis=0) - 200 * EPS).all()
 
 
 @EXAMPLES
