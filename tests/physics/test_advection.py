@@ -17,6 +17,7 @@ from numpy.typing import NDArray
 from oceanbox.experiment.model import Model
 from oceanbox.grid import HALO, Grid
 from oceanbox.physics.continuity import keep_thickness_positive
+from oceanbox.physics.limiter import limited_face_value
 from oceanbox.physics.state import Constants
 from oceanbox.physics.tracers import concentration, tracer_flux, transport_step
 from tests.building import box, run_days, set_state
@@ -113,6 +114,22 @@ def flows(draw: st.DrawFn) -> Flow:
     size = 10.0 ** draw(st.floats(0.0, 3.0))
     constants = setup.constants._replace(centred_tracers=draw(st.booleans()))
     return Flow(grid, constants, grid.embed_centres(h), grid.embed_x_faces(size * U), grid.embed_y_faces(size * V))
+
+
+@pytest.mark.parametrize("ahead", [1.0, -3.0])
+@pytest.mark.parametrize("courant", [0.0, 0.4])
+def test_limiter_is_korens_and_lies_in_swebys_region(courant: float, ahead: float) -> None:
+    """phi(r) = max(0, min(2 r, (1 + 2 r)/3, 2)), hence 0 <= phi <= min(2 r, 2); from memory.
+
+    Round-off: r is known to eps of the values up to 3000 that make it.
+    """
+    ratios = np.concatenate([-np.logspace(-3, 3, 40), [0.0], np.logspace(-3, 3, 200)])
+    faces = np.array([limited_face_value(1.0 - r * ahead, 1.0, 1.0 + ahead, courant) for r in ratios])
+    phi = (faces - 1.0) / (0.5 * (1.0 - courant) * ahead)
+    expected = np.maximum(0.0, np.minimum(np.minimum(2.0 * ratios, (1.0 + 2.0 * ratios) / 3.0), 2.0))
+    assert np.abs(phi - expected).max() < 1e4 * EPS
+    assert (phi >= 0.0).all()
+    assert (phi <= np.minimum(2.0 * np.maximum(ratios, 0.0), 2.0) + 1e4 * EPS).all()
 
 
 @EXAMPLES
