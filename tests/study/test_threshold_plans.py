@@ -138,6 +138,13 @@ def test_all_switches_start_from_one_equilibrium_beside_a_control(switch: tuple[
     assert runs[2].config.evolve.duration_days == 12.0
 
 
+def test_a_switch_changes_nothing_but_what_it_names(tmp_path: Path) -> None:
+    """What sets the start apart from the base stays as it is afterwards."""
+    loaded = study_of(tmp_path, {"switch": {**SHORT, "switches": SWITCHES, "start": {"changes": {WIND: -0.05}}}})
+    winds = [case.config.surface.wind.zonal_stress_N_per_m2 for case in planned_cases(loaded.study, loaded.base)]
+    assert winds == [-0.05, -0.05, 0.0, -0.05]
+
+
 def test_series_share_one_time_axis(switch: tuple[Path, Gathered, HereEngine]) -> None:
     """Each begins with the value of the start; points that a switch does not have are NaN."""
     folder, found, _ = switch
