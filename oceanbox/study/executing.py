@@ -62,25 +62,32 @@ def execute(
     """
     into = into.resolve()
     into.mkdir(parents=True, exist_ok=True)
-    with _interruptible():
-        return _Execution(cases, into, engine, report).run()
+    execution = _Execution(cases, into, engine, report)
+    with _stopping_on_signals(execution.stop):
+        return execution.run()
 
 
 @contextmanager
-def _interruptible() -> Iterator[None]:
-    """SIGTERM is as good as Ctrl-C."""
+def _stopping_on_signals(stop: threading.Event) -> Iterator[None]:
+    """The first SIGINT or SIGTERM sets `stop`, which is looked at where stopping does no harm; a second one does not wait.
+
+    Outside the main thread nothing is caught.
+    """
     if threading.current_thread() is not threading.main_thread():
         yield
         return
 
-    def interrupt(number: int, frame: object) -> None:
-        raise KeyboardInterrupt
+    def ask(number: int, frame: object) -> None:
+        if stop.is_set():
+            raise KeyboardInterrupt
+        stop.set()
 
-    before = signal.signal(signal.SIGTERM, interrupt)
+    before = {number: signal.signal(number, ask) for number in (signal.SIGINT, signal.SIGTERM)}
     try:
         yield
     finally:
-        signal.signal(signal.SIGTERM, before)
+        for number, handler in before.items():
+            signal.signal(number, handler)
 
 
 class _Execution:
@@ -97,29 +104,35 @@ class _Execution:
         self.running: list[str] = []
         self.now: list[CaseStatus] = []
         self.began = time.monotonic()
+        self.stop = threading.Event()
 
     def run(self) -> list[CaseStatus]:
         """Start and await until nothing waits and nothing runs."""
         warmed = False
-        try:
-            while self.waiting or self.running:
-                self._fail_without_start()
-                for key in self._ready()[: max(0, self.engine.slots - len(self.running))]:
-                    if not warmed:
-                        self.engine.warm(self._task(key, None))
-                        warmed = True
-                    self._start(key)
-                self._tell()
-                if self.running:
-                    answer = self.engine.next_answer(POLL_SECONDS)
-                    if answer is not None:
-                        self._take(answer)
-        except KeyboardInterrupt:
-            for answer in self.engine.stop():
+        while self.waiting or self.running:
+            self._fail_without_start()
+            for key in self._ready()[: max(0, self.engine.slots - len(self.running))]:
+                if self.stop.is_set():
+                    break
+                if not warmed:
+                    self.engine.warm(self._task(key, None))
+                    warmed = True
+                self._start(key)
+            self._tell()
+            answer = self.engine.next_answer(POLL_SECONDS) if self.running else None
+            if answer is not None:
                 self._take(answer)
-            raise
+            if self.stop.is_set():
+                self._stop()
         self._tell()
         return [self.status[case.identity] for case in self.cases]
+
+    def _stop(self) -> None:
+        """Have what is running saved.  Raises KeyboardInterrupt if anything is left to do."""
+        for answer in self.engine.stop():
+            self._take(answer)
+        if self.waiting or self.running:
+            raise KeyboardInterrupt
 
     # -- starting -----------------------------------------------------------------------------------------------------
 
@@ -199,6 +212,7 @@ class _Execution:
         earlier = self.status[key].seconds
         seconds = answer.seconds + (earlier if math.isfinite(earlier) else 0.0)
         if answer.failure == "interrupted":
+            self.waiting.append(key)
             self._note(key, replace(self.status[key], state=State.WAITING, reason=answer.reason, seconds=seconds))
             return
         if answer.failure:
