@@ -76,6 +76,10 @@ def _describe(annotation: Any, metadata: tuple[Any, ...], unit: str) -> str:
         return _describe(arguments[0], (*metadata, *arguments[1:]), unit)
     if origin is tuple:
         return _describe_list(arguments, metadata, unit)
+    if origin is dict:
+        return "a mapping of keys" + _at_least(metadata)
+    if annotation is Any:
+        return "any value"
     if origin in (Union, UnionType) and NoneType in arguments:
         rest = [argument for argument in arguments if argument is not NoneType]
         return _describe(rest[0], metadata, unit) + " or null"
@@ -87,7 +91,15 @@ def _describe(annotation: Any, metadata: tuple[Any, ...], unit: str) -> str:
         return "a mapping with kind " + " | ".join(model_word(model) for model in models)
     if models:
         return "a mapping of keys"
+    if origin in (Union, UnionType):
+        return " or ".join(_describe(argument, metadata, unit) for argument in arguments)
     return _PLAIN_WORDS[annotation] + _range(metadata, unit)
+
+
+def _at_least(metadata: tuple[Any, ...]) -> str:
+    """The least number of keys among the metadata."""
+    least = next((item for item in metadata if isinstance(item, annotated_types.MinLen)), None)
+    return f", {least.min_length} or more" if least is not None else ""
 
 
 def _describe_list(arguments: tuple[Any, ...], metadata: tuple[Any, ...], unit: str) -> str:
