@@ -32,8 +32,6 @@ __all__ = ["Observer", "Progress", "Run"]
 Array = NDArray[np.float64]
 # The step is shortened when the fastest wave leaves less than this margin to the limit.
 LIMIT_MARGIN = 0.95
-# Spin-up ends when its drift is this share of what still counts as equilibrium.
-NEAR_EQUILIBRIUM = 0.5
 
 
 @dataclass(frozen=True)
@@ -152,7 +150,8 @@ class Run:
         if plan.snapshot < math.inf and self._is_due(counts.snapshots * plan.snapshot):
             self._take_snapshot()
         if self._spinning_up():
-            if self._is_due(self._cycle_end()):
+            # A run that ends within the spin-up reports what its last cycle did.
+            if self._is_due(self._cycle_end()) and not self._is_due(plan.end):
                 self._end_cycle()
         elif plan.windows_repeat and self._is_due(self._window_end()):
             return self._end_window()
@@ -199,7 +198,7 @@ class Run:
         if told:
             self.notes.append(f"day {self.model.clock.days:.0f}: {told}")
         years = self.model.clock.seconds / SECONDS_PER_YEAR
-        near = spin_up.drift < NEAR_EQUILIBRIUM * min(asked.volume_drift_per_decade, asked.heat_drift_per_decade)
+        near = spin_up.is_near(min(asked.volume_drift_per_decade, asked.heat_drift_per_decade))
         if near or years >= asked.acceleration.longest_years:
             spin_up.counts.ended = True
         if spin_up.counts.ended:

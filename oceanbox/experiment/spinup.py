@@ -7,7 +7,7 @@ after the second the run goes on plainly and says so.
 """
 
 from collections.abc import Mapping
-from dataclasses import asdict, dataclass
+from dataclasses import asdict, dataclass, field
 from typing import Any
 
 import numpy as np
@@ -26,6 +26,11 @@ TYPICAL_ANOMALY = 20.0
 LARGEST_CHANGE = 0.06
 GROWTH_REFUSED = 2.0
 REFUSALS_BORNE = 2
+# When spin-up ends, in units of the drift per decade that still counts as equilibrium.
+SMALL_DRIFT = 0.5
+FAIR_DRIFT = 1.2
+IDLE_JUMP = 0.1
+RECENT = 3
 
 
 @dataclass
@@ -36,6 +41,7 @@ class SpinUpCounts:
     refusals: int = 0
     ended: bool = False
     smallest_residual: float = float("inf")
+    recent_jumps: list[float] = field(default_factory=list)  # relative sizes of the last extrapolations
     volume_added: float = 0.0  # m3
     heat_added: float = 0.0  # J
 
@@ -120,9 +126,19 @@ class SpinUp:
             self._put(image)
             return self._refuse("a column could not hold it")
         water, area = model.setup.water, model.grid.cell_area
+        self.counts.recent_jumps = [*self.counts.recent_jumps[1 - RECENT :], abs(new_volume - volume) / volume]
         self.counts.volume_added += (new_volume - volume) * area
         self.counts.heat_added += (new_heat - heat) * area * water.heat
         return ""
+
+    def is_near(self, tolerance: float) -> bool:
+        """Whether the windows that are judged may begin; ``tolerance`` is the relative drift per decade they allow.
+
+        Either the drift is well inside it, or about there and the extrapolations no longer find anything to add.
+        """
+        jumps = self.counts.recent_jumps
+        idle = len(jumps) == RECENT and sum(jumps) / RECENT < IDLE_JUMP * tolerance
+        return self.drift < SMALL_DRIFT * tolerance or (idle and self.drift < FAIR_DRIFT * tolerance)
 
     def _refuse(self, reason: str) -> str:
         self.counts.refusals += 1
@@ -153,7 +169,7 @@ class SpinUp:
         self.argument = arrays["spinup__argument"]
         self._before = (float(arrays["spinup__before"][0]), float(arrays["spinup__before"][1]))
 
-    def record(self) -> dict[str, float]:
+    def record(self) -> dict[str, Any]:
         """The counts, for a checkpoint."""
         return asdict(self.counts)
 
