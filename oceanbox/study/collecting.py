@@ -162,7 +162,7 @@ def _ordered(dataset: xr.Dataset) -> list[str]:
     """Names of variables: which case it is, what became of it, numbers."""
     first = ["case_name", *(str(name) for name in dataset.coords if name != "case_name")]
     texts = [str(name) for name, variable in dataset.data_vars.items() if variable.dtype.kind == "O"]
-    return [*first, *texts, *(str(name) for name in dataset.data_vars if name not in texts)]
+    return list(dict.fromkeys([*first, *texts, *(str(name) for name in dataset.data_vars)]))
 
 
 def _heading(name: str, dataset: xr.Dataset) -> str:

@@ -15,7 +15,7 @@ from typing import Any
 from oceanbox.output.files import whole_file
 from oceanbox.study.engines import Engine
 from oceanbox.study.plan import Case, folder_of
-from oceanbox.study.status import CaseStatus, State, state_of, status_of, write_status
+from oceanbox.study.status import CHECKPOINT, STATE, CaseStatus, State, status_of, write_status
 from oceanbox.study.working import Answer, Task
 
 __all__ = ["StudyProgress", "execute", "nearest_done", "quiet"]
@@ -115,7 +115,7 @@ class _Execution:
                 if self.stop.is_set():
                     break
                 if not warmed:
-                    self.engine.warm(self._task(key, None))
+                    self.engine.warm(self._task(key, ""))
                     warmed = True
                 self._start(key)
             self._tell()
@@ -159,45 +159,34 @@ class _Execution:
                 why = status.reason or "it is not part of this study"
                 self._end(key, CaseStatus(State.FAILED, f"its start, {start.name}, was not reached: {why}", "no start"))
 
-    def _task(self, key: str, source: Case | None) -> Task:
+    def _task(self, key: str, source: str) -> Task:
         case = self.by_key[key]
-        return Task(
-            key,
-            case.config,
-            case.command,
-            folder_of(case, self.into),
-            state_of(source, self.into) if source is not None else None,
-        )
+        start = self.into / source / STATE if source else None
+        return Task(key, case.config, case.command, folder_of(case, self.into), start)
 
-    def _source(self, key: str) -> Case | None:
-        """The case whose end this one starts from."""
+    def _source(self, key: str) -> str:
+        """The folder, relative to the study's, of the case from whose end this one starts, '' for none."""
         case = self.by_key[key]
-        if case.start is not None or case.warm_start == "none":
-            return case.start
-        begun = self.status[key].started_from
-        checkpoint = folder_of(case, self.into) / "checkpoint.nc"
-        if checkpoint.exists():  # it goes on from where it once started
-            return next((item for item in self.by_key.values() if self._relative(item) == begun), None)
+        if case.start is not None:
+            return self._relative(case.start)
+        if case.warm_start == "none":
+            return ""
+        if (folder_of(case, self.into) / CHECKPOINT).exists():  # it goes on from where it once started
+            return self.status[key].started_from
         done = [item for item in self.cases if self.status[item.identity].state is State.DONE]
-        return nearest_done(case, done, self.cases)
+        nearest = nearest_done(case, done, self.cases)
+        return self._relative(nearest) if nearest is not None else ""
 
     def _relative(self, case: Case) -> str:
         return folder_of(case, self.into).relative_to(self.into).as_posix()
 
     def _start(self, key: str) -> None:
         source = self._source(key)
-        self.status[key] = replace(
-            self.status[key],
-            state=State.RUNNING,
-            reason="",
-            failure="",
-            started_from=self._relative(source) if source is not None else "",
-        )
-        task = self._task(key, source)
+        self.status[key] = replace(self.status[key], state=State.RUNNING, reason="", failure="", started_from=source)
         write_status(self.by_key[key], self.into, self.status[key])
         self.waiting.remove(key)
         self.running.append(key)
-        self.engine.submit(task)
+        self.engine.submit(self._task(key, source))
 
     # -- ending -------------------------------------------------------------------------------------------------------
 

@@ -14,7 +14,8 @@ from oceanbox.config.validating import validate
 from oceanbox.config.yaml_tree import Node, plain, read_tree
 from oceanbox.errors import ConfigError, Fault
 from oceanbox.study.plan import Case, cases_of
-from oceanbox.study.schema import Study, overlap
+from oceanbox.study.schema import PLANS, Study, overlap
+from oceanbox.study.threshold_plans import THRESHOLD_PLANS, planned_cases
 
 __all__ = ["LoadedStudy", "StudySource", "check_cases", "load_study"]
 
@@ -64,7 +65,7 @@ class LoadedStudy:
     """A checked study.
 
     base      the configuration that is varied, with `study.changes`, and where its values were written
-    cases     of a study with axes, a sample or explicit cases; () for other plans, which make their own
+    cases     those that are known before anything runs; a branch study may add some to refine its jumps
     """
 
     study: Study
@@ -99,8 +100,7 @@ def load_study(path: str | Path) -> LoadedStudy:
     cases: list[Case] = []
     try:
         base = base.with_changes(study.changes)
-        if study.plan in ("axes", "sample", "cases"):
-            cases = cases_of(study, base)
+        cases = planned_cases(study, base) if study.plan in THRESHOLD_PLANS else cases_of(study, base)
     except ConfigError as error:
         faults += [_relocated(study, source, loaded.source, fault) for fault in error.faults]
     faults += [replace(fault, location=source.locate("fields")) for fault in _grid_faults(study, cases)]
@@ -198,6 +198,8 @@ def _relocated(study: Study, source: StudySource, base_source: Source, fault: Fa
     """The fault at the line of the study that sets its key; of the base configuration where the study does not."""
     if fault.location:
         return fault
+    if fault.key.partition(".")[0] in PLANS:
+        return replace(fault, location=source.locate(fault.key))
     place = _place(study, fault)
     return replace(fault, location=source.locate(place) if place else base_source.locate(fault.key))
 
@@ -208,17 +210,20 @@ def _place(study: Study, fault: Fault) -> str:
     for index, case in enumerate(study.cases or ()):
         if fault.value.endswith(f"in case {case.name}") or f"in case {case.name} and " in fault.value:
             places = [(f"cases.{index}.changes.{key}", key) for key in case.changes] + places
-    if study.branch is not None:
-        places.append(("branch.key", study.branch.key))
+    for index, switch in enumerate(study.switch.switches if study.switch is not None else ()):
+        places += [(f"switch.switches.{index}.changes.{key}", key) for key in switch.changes]
     touched = [place for place, key in places if fault.key and overlap(key, fault.key)]
     return touched[0] if touched else ""
 
 
 def _sorted(faults: Iterable[Fault]) -> ConfigError:
-    """The faults in the order of their lines."""
+    """The faults in the order of their lines; of those that differ in the value alone, the first."""
+    first: dict[tuple[str, ...], Fault] = {}
+    for fault in faults:
+        first.setdefault((fault.location, fault.key, fault.allowed, fault.remedy), fault)
 
     def line(fault: Fault) -> tuple[str, int]:
         file, _, number = fault.location.rpartition(":")
         return file, int(number) if number.isdecimal() else 0
 
-    return ConfigError(sorted(dict.fromkeys(faults), key=line))
+    return ConfigError(sorted(first.values(), key=line))

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+import math
+import time
+from collections.abc import Callable, Iterator, Sequence
 from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
@@ -22,6 +24,7 @@ from oceanbox.study.locking import alone_in
 from oceanbox.study.methods import write_methods
 from oceanbox.study.predicting import Forecast, forecast
 from oceanbox.study.status import CaseStatus, State, status_of
+from oceanbox.study.threshold_plans import THRESHOLD_PLANS, Gathered, gather
 
 __all__ = ["StudyOutcome", "default_folder", "dry_run", "run_study", "study_attributes"]
 
@@ -109,9 +112,8 @@ def run_study(
     with alone_in(folder):
         _keep_study(loaded, folder)
         with _engine(folder, workers, scheduler) as engine:
-            statuses = execute(loaded.cases, folder, engine, report)
-        dataset = collect(loaded.study, loaded.cases, folder, study_attributes(loaded, statuses))
-        return _written(loaded, folder, dataset, statuses)
+            gathered = _gather(loaded, folder, engine, report)
+        return _written(loaded, folder, gathered)
 
 
 @contextmanager
@@ -134,7 +136,35 @@ def _keep_study(loaded: LoadedStudy, folder: Path) -> None:
         part.write_text(loaded.path.read_text(encoding="utf-8"), encoding="utf-8")
 
 
-def study_attributes(loaded: LoadedStudy, statuses: list[CaseStatus]) -> dict[str, str]:
+def _gather(loaded: LoadedStudy, folder: Path, engine: Engine, report: Callable[[StudyProgress], None]) -> Gathered:
+    study, base = loaded.study, loaded.base
+    if study.plan in THRESHOLD_PLANS:
+        return gather(study, base, folder, engine, OverAll(len(loaded.cases), report))
+    statuses = execute(loaded.cases, folder, engine, report)
+    return Gathered(collect(study, loaded.cases, folder), tuple(statuses), ())
+
+
+class OverAll:
+    """Adds up the progress of several calls of `execute`; `total` is the number of cases expected of them all."""
+
+    def __init__(self, total: int, report: Callable[[StudyProgress], None]) -> None:
+        self._total, self._report = total, report
+        self._found = self._done = self._failed = 0
+        self._began = time.monotonic()
+
+    def __call__(self, progress: StudyProgress) -> None:
+        found, done = self._found + progress.found, self._done + progress.done
+        failed = self._failed + progress.failed
+        ended = found + done + failed
+        total = max(self._total, ended + len(progress.running))
+        ran = done + failed
+        pace = (time.monotonic() - self._began) / ran if ran else math.nan
+        self._report(StudyProgress(total, found, done, failed, progress.running, pace * (total - ended)))
+        if progress.found + progress.done + progress.failed == progress.total:  # the last report of a call
+            self._found, self._done, self._failed = found, done, failed
+
+
+def study_attributes(loaded: LoadedStudy, statuses: Sequence[CaseStatus]) -> dict[str, str]:
     """Global attributes of what is collected: how the study was made, so that it can be made again."""
     study = loaded.study
     done = sum(status.state is State.DONE for status in statuses)
@@ -149,10 +179,11 @@ def study_attributes(loaded: LoadedStudy, statuses: list[CaseStatus]) -> dict[st
     return attributes | {"oceanbox_study": loaded.path.read_text(encoding="utf-8")}
 
 
-def _written(loaded: LoadedStudy, folder: Path, dataset: xr.Dataset, statuses: list[CaseStatus]) -> StudyOutcome:
+def _written(loaded: LoadedStudy, folder: Path, gathered: Gathered) -> StudyOutcome:
+    dataset = gathered.dataset.assign_attrs(study_attributes(loaded, gathered.statuses))
     paths = (
         write_collected(dataset, folder),
         write_table(dataset, folder),
-        write_methods(loaded.study, loaded.base, statuses, folder),
+        write_methods(loaded.study, loaded.base, gathered.statuses, folder),
     )
-    return StudyOutcome(folder, dataset, paths, tuple(statuses))
+    return StudyOutcome(folder, dataset, paths, gathered.statuses, gathered.findings)

@@ -10,7 +10,15 @@ from pydantic import Field
 
 from oceanbox.config.section import CrossFault, Real, Section, Whole, choice, optional_subsection, quantity
 from oceanbox.config.showing import show
-from oceanbox.study.threshold_specs import BranchSpec, Changes, ParameterRange, SensitivitySpec, SwitchSpec
+from oceanbox.study.threshold_specs import (
+    BranchSpec,
+    Changes,
+    ElasticitiesSpec,
+    ParameterRange,
+    SensitivitySpec,
+    SobolIndicesSpec,
+    SwitchSpec,
+)
 
 __all__ = ["PLANS", "Axis", "ExplicitCase", "Logarithmic", "Sample", "Span", "Study"]
 
@@ -239,13 +247,26 @@ class Study(Section):
                     yield CrossFault(plan, f"the name {name} {count} times", "names must differ", "rename one")
 
     def varied_keys(self) -> list[tuple[str, str]]:
-        """Every key that is set somewhere in the study, as (where in the study file, dotted key of the base)."""
+        """Every key that the study varies or sets for all its cases, as (place in the study file, dotted key)."""
         found = [(f"changes.{key}", key) for key in self.changes]
         for index, axis in enumerate(self.axes or ()):
             found += [(f"axes.{index}.{'key' if axis.key else 'keys'}", key) for key in axis.all_keys]
         for index, item in enumerate(self.sample.ranges if self.sample else ()):
             found.append((f"sample.ranges.{index}.key", item.key))
-        return found
+        return found + list(self._keys_of_other_plans())
+
+    def _keys_of_other_plans(self) -> Iterator[tuple[str, str]]:
+        if self.branch is not None:
+            yield "branch.key", self.branch.key
+        if self.switch is not None:
+            for key in self.switch.start.changes:
+                yield f"switch.start.changes.{key}", key
+        if isinstance(self.sensitivity, ElasticitiesSpec):
+            for index, key in enumerate(self.sensitivity.keys):
+                yield f"sensitivity.keys.{index}", key
+        if isinstance(self.sensitivity, SobolIndicesSpec):
+            for index, item in enumerate(self.sensitivity.ranges):
+                yield f"sensitivity.ranges.{index}.key", item.key
 
     def _overlaps(self) -> Iterator[CrossFault]:
         found = self.varied_keys()

@@ -12,9 +12,12 @@ import oceanbox
 from oceanbox.output.files import whole_file
 from oceanbox.study.plan import Case, folder_of
 
-__all__ = ["CaseStatus", "State", "result_of", "state_of", "status_of", "write_status"]
+__all__ = ["CHECKPOINT", "RESULT", "STATE", "CaseStatus", "State", "result_of", "state_of", "status_of", "write_status"]
 
 FILE = "status.json"
+RESULT, STATE, CHECKPOINT = "result.nc", "state.nc", "checkpoint.nc"
+"""Files that a run leaves in its folder; see `experiment.store`."""
+
 UNREPEATABLE = ("UnstableRun", "ConfigError")
 """Failures that the same program will repeat: such a case counts as finished."""
 
@@ -60,12 +63,12 @@ class CaseStatus:
 
 def result_of(case: Case, into: Path) -> Path:
     """The result file of a case."""
-    return folder_of(case, into) / "result.nc"
+    return folder_of(case, into) / RESULT
 
 
 def state_of(case: Case, into: Path) -> Path:
     """The state at the end of a case, from which another can start."""
-    return folder_of(case, into) / "state.nc"
+    return folder_of(case, into) / STATE
 
 
 def write_status(case: Case, into: Path, status: CaseStatus) -> None:
