@@ -18,6 +18,8 @@ __all__ = [
     "diffusive_thermocline_depth",
     "fit_log_law",
     "fit_scale",
+    "log_law_depth",
+    "misfit_of",
 ]
 
 Array = NDArray[np.float64]
@@ -117,6 +119,22 @@ def fit_scale(depth: ArrayLike, scale: ArrayLike) -> ScaleFit:
     left = h - factor * s
     error = float(np.sqrt((left**2).sum() / (h.size - 1) / size))
     return ScaleFit(factor=factor, factor_error=error, misfit=_root_mean_square(left), cases=h.size)
+
+
+def misfit_of(depth: ArrayLike, law: ArrayLike) -> float:
+    """Root mean square of depth minus law over the runs that have both, m; NaN where none has."""
+    left = np.asarray(depth, dtype=float) - np.asarray(law, dtype=float)
+    left = left[np.isfinite(left)]
+    return _root_mean_square(left) if left.size else float("nan")
+
+
+def log_law_depth(mixed_layer_depth: ArrayLike, half_thickness: ArrayLike, ratio: ArrayLike) -> Array:
+    """H_m + l ln(W_up/W_d) of several runs, m; NaN where the ratio is not positive.
+
+    mixed_layer_depth, half_thickness  H_m and l, m;  ratio  W_up/W_d
+    """
+    law: Array = np.asarray(mixed_layer_depth) + np.asarray(half_thickness) * _log_ratio(ratio, 1.0)
+    return law
 
 
 def diffusive_thermocline_depth(

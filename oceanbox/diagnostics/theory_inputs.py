@@ -15,7 +15,7 @@ from oceanbox.diagnostics.labelled import array_of
 from oceanbox.diagnostics.reference import Reference
 from oceanbox.diagnostics.scales import advective_thermocline_depth
 from oceanbox.diagnostics.theory import diffusive_thermocline_depth
-from oceanbox.diagnostics.upwelling import entrainment_closure, lifted_water
+from oceanbox.diagnostics.upwelling import MixedLayer, entrainment_closure, lifted_water
 
 if TYPE_CHECKING:
     import xarray as xr
@@ -42,6 +42,8 @@ THEORY_INPUTS: Final = MappingProxyType(
         "upwelling_ratio_basin": Input("upwelling_basin over loss_to_abyss", "1"),
         "advective_depth": Input("advective scale of the thermocline's depth in the subtropics", "m"),
         "diffusive_depth": Input("diffusive scale of the thermocline's depth in the subtropics", "m"),
+        "mixed_layer_depth": Input("configured depth of the mixed layer", "m"),
+        "half_thickness": Input("configured half-thickness of the thermocline", "m"),
     }
 )
 """The variables of `theory_inputs`. Two balances can be put into the log law: what the tropics must supply themselves, or
@@ -66,15 +68,17 @@ def _exchange(dataset: xr.Dataset) -> dict[str, float]:
     tropics = Geometry.of(dataset).rows_near_equator(TROPICS_TO_DEG)
     supply = float(tropics @ (array_of(dataset, "entrainment_upwelling") * area).sum(axis=1))
     loss = -float(((array_of(dataset, "transformation") + array_of(dataset, "outcrop_volume")) * area).sum())
-    by_row = np.full(len(area), np.nan)
+    by_row, layer = np.full(len(area), np.nan), MixedLayer(*(float("nan"),) * 3)
     if entrainment_closure(dataset.attrs, "upwelling") is not None:
-        by_row = (lifted_water(dataset) * area).sum(axis=1)
+        by_row, layer = (lifted_water(dataset) * area).sum(axis=1), MixedLayer.from_attributes(dataset.attrs)
     upwelled = {"upwelling_tropics": float(tropics @ by_row), "upwelling_basin": float(by_row.sum())}
     return upwelled | {
         "supply_tropics": supply,
         "loss_to_abyss": loss,
         "upwelling_ratio_tropics": _ratio(upwelled["upwelling_tropics"], supply),
         "upwelling_ratio_basin": _ratio(upwelled["upwelling_basin"], loss),
+        "mixed_layer_depth": layer.depth,
+        "half_thickness": layer.half_thickness,
     }
 
 

@@ -61,20 +61,20 @@ class SpinUp:
         state = self.model.state
         scales = {"thickness": 1.0, "heat": 1.0 / TYPICAL_ANOMALY}
         parts = []
-        for name, field in state._asdict().items():
-            weight = np.zeros_like(field)
+        for name, content in state._asdict().items():
+            weight = np.zeros_like(content)
             weight[..., HALO:-HALO, HALO:-HALO] = scales.get(name, 0.0)
             parts.append(weight.ravel())
         return np.concatenate(parts)
 
     def _vector(self) -> Array:
-        return np.concatenate([field.ravel() for field in self.model.state])
+        return np.concatenate([content.ravel() for content in self.model.state])
 
     def _put(self, vector: Array) -> None:
         start = 0
-        for field in self.model.state:
-            field[...] = vector[start : start + field.size].reshape(field.shape)
-            start += field.size
+        for content in self.model.state:
+            content[...] = vector[start : start + content.size].reshape(content.shape)
+            start += content.size
         # The multi-step scheme has no history of the new state.
         self.model.change_step(self.model.clock.dt)
 

@@ -94,6 +94,14 @@ def test_a_law_is_not_fitted_to_too_few_runs_or_to_one_ratio() -> None:
         theory.fit_scale([100.0, np.nan], [50.0, 60.0])
 
 
+def test_the_law_with_given_parameters_has_a_misfit_too() -> None:
+    law = theory.log_law_depth(np.full(5, 50.0), 30.0, UPWELLED / DESTROYED)
+    np.testing.assert_allclose(law, depths(), rtol=1e-13)
+    assert theory.misfit_of(law + np.array([3.0, -4.0, 0.0, np.nan, 0.0]), law) == pytest.approx(2.5, rel=1e-12)
+    assert np.isnan(theory.log_law_depth(50.0, 30.0, -1.0))
+    assert np.isnan(theory.misfit_of([np.nan], [1.0]))
+
+
 def test_a_scale_is_fitted_by_its_factor() -> None:
     fit = theory.fit_scale([50.0, 100.0, 150.0, np.nan], [100.0, 200.0, 300.0, 1.0])
     assert (fit.factor, fit.cases) == (pytest.approx(0.5, rel=1e-14), 3)
@@ -124,6 +132,7 @@ def test_exchange_of_a_run_adds_up(result: xr.Dataset) -> None:
     lifted = float((lifted_water(result) * result["cell_area"]).sum())
     assert float(found["upwelling_basin"]) == pytest.approx(lifted, rel=1e-12)
     assert 0.0 < found["upwelling_tropics"] < found["upwelling_basin"]
+    assert (found["mixed_layer_depth"], found["half_thickness"]) == (50.0, 30.0)
     ratio = float(found["upwelling_ratio_basin"] * found["loss_to_abyss"] / found["upwelling_basin"])
     assert ratio == pytest.approx(1.0, rel=1e-14)
 
@@ -156,7 +165,8 @@ def test_what_a_run_does_not_have_is_missing(result: xr.Dataset) -> None:
     found = theory_inputs(result.assign_attrs(oceanbox_config=off))
     missing = {str(name) for name, value in found.items() if np.isnan(float(value))}
     ratios = {"upwelling_ratio_tropics", "upwelling_ratio_basin"}
-    assert missing == {"upwelling_tropics", "upwelling_basin", "diffusive_depth"} | ratios
+    layer = {"mixed_layer_depth", "half_thickness"}
+    assert missing == {"upwelling_tropics", "upwelling_basin", "diffusive_depth"} | ratios | layer
     assert set(found) == set(THEORY_INPUTS)
     with warnings.catch_warnings():
         warnings.simplefilter("error")  # not the root of a negative number

@@ -17,14 +17,17 @@ from oceanbox.config import Config, loads
 from oceanbox.errors import InterruptedRun
 from oceanbox.experiment.api import equilibrate, evolve
 from oceanbox.experiment.assembly import assemble_setup
+from oceanbox.experiment.model import Model
 from oceanbox.experiment.outcome import Ending
-from oceanbox.experiment.running import Progress
+from oceanbox.experiment.plan import evolution_plan
+from oceanbox.experiment.running import Progress, Run
 from oceanbox.experiment.scales import derive_scales
 from oceanbox.output.checkpoint import load_checkpoint
 from oceanbox.output.files import part_of, read_dataset
 from tests.experiment.tiny_runs import (
     THE_COMMAND_WITH_FREQUENT_CHECKPOINTS,
     TINY,
+    Quiet,
     differences,
     oceanbox,
     start,
@@ -150,6 +153,22 @@ def test_a_run_may_be_stopped_at_every_single_chance(scheme: str, tmp_path: Path
     assert_same_run(tmp_path / "stretches", tmp_path / "whole")
     assert "step shortened" in whole.result.attrs["history"]
     assert "step shortened" in read_dataset(tmp_path / "stretches" / "result.nc").attrs["history"]
+
+
+def test_a_restored_run_would_save_the_very_restart_point_it_came_from(tmp_path: Path) -> None:
+    """Nothing is dropped on the way: arrays, counters, clock, notes, and the speeds for which the step was last checked."""
+    config = loads(TINY)
+    for _ in range(3):
+        with pytest.raises(InterruptedRun):
+            evolve(config, tmp_path, report=stop_at_once)
+    arrays, attributes = load_checkpoint(tmp_path / "checkpoint.nc")
+    run = Run(Model(assemble_setup(config)), evolution_plan(config), Quiet())
+    run.restore(arrays, attributes)
+    again = run.checkpoint_arrays()
+    assert again.keys() == arrays.keys()
+    assert all(again[name].tobytes() == arrays[name].tobytes() for name in arrays)
+    assert run.checkpoint_attributes() == {name: attributes[name] for name in run.checkpoint_attributes()}
+    assert run.model.total_steps > 0
 
 
 @pytest.mark.parametrize(

@@ -16,22 +16,9 @@ from oceanbox.experiment.assembly import assemble_setup
 from oceanbox.experiment.health import is_sound
 from oceanbox.experiment.model import Model, limits_for
 from oceanbox.experiment.plan import evolution_plan
-from oceanbox.experiment.running import Progress, Run
+from oceanbox.experiment.running import Run
 from oceanbox.output.checkpoint import load_checkpoint
-from tests.experiment.tiny_runs import TINY
-
-
-class Quiet:
-    """An observer that sees nothing and saves nothing."""
-
-    def progress(self, progress: Progress) -> None: ...
-
-    def snapshot(self, run: Run, number: int) -> None: ...
-
-    def checkpoint_due(self) -> bool:
-        return False
-
-    def save(self, run: Run) -> None: ...
+from tests.experiment.tiny_runs import TINY, Quiet
 
 
 def hasty() -> Config:

@@ -12,6 +12,8 @@ from pathlib import Path
 import netCDF4
 import numpy as np
 
+from oceanbox.experiment.running import Progress, Run
+
 TOP = Path(__file__).resolve().parents[2]
 
 TINY = """
@@ -40,6 +42,19 @@ THE_COMMAND_WITH_FREQUENT_CHECKPOINTS = ("-c", FREQUENT_CHECKPOINTS)
 
 # When a file was made, and by which state of the sources, says nothing about what is in it.
 CIRCUMSTANCES = {"date_created", "history", "oceanbox_commit"}
+
+
+class Quiet:
+    """An observer that sees nothing and saves nothing."""
+
+    def progress(self, progress: Progress) -> None: ...
+
+    def snapshot(self, run: Run, number: int) -> None: ...
+
+    def checkpoint_due(self) -> bool:
+        return False
+
+    def save(self, run: Run) -> None: ...
 
 
 def start(*arguments: str | Path, via: tuple[str, ...] = THE_COMMAND) -> subprocess.Popen[str]:
