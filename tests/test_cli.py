@@ -116,8 +116,8 @@ def test_a_configuration_that_makes_no_sense_on_its_grid_is_refused_with_its_lin
 
 def test_a_map_that_cannot_be_used_is_refused_with_its_line(capsys: pytest.CaptureFixture[str], config: Path) -> None:
     """Only on the grid does a coefficient that falls southward become negative."""
-    restoring = "  heat:\n    restoring:\n      coefficient_W_per_m2_K: {shape: linear, value_at_origin: 9.0, slope_per_deg: 1.0}\n"
-    config.write_text(TINY.replace("surface:\n", f"surface:\n{restoring}"))
+    coefficient = "coefficient_W_per_m2_K: {shape: linear, value_at_origin: 9.0, slope_per_deg: 1.0}"
+    config.write_text(TINY.replace("surface:\n", f"surface:\n  heat:\n    restoring:\n      {coefficient}\n"))
     code, out, err = run(capsys, "evolve", config, "--into", config.parent / "run")
     assert (code, out) == (BAD_CONFIG, "")
     assert err.startswith(f"{config}:8: surface.heat.restoring.coefficient_W_per_m2_K: got ")
