@@ -38,8 +38,12 @@ THEORY_INPUTS: Final = MappingProxyType(
             "what of the water lifted within 10 degrees comes from below the thermocline", "m3 s-1"
         ),
         "loss_to_abyss": Input("warm water destroyed and handed over where the layer outcrops", "m3 s-1"),
-        "upwelling_ratio_tropics": Input("upwelling_tropics over supply_tropics", "1"),
-        "upwelling_ratio_basin": Input("upwelling_basin over loss_to_abyss", "1"),
+        "upwelling_ratio_tropics": Input(
+            "ratio of all water lifted within 10 degrees to what of it comes from below the thermocline", "1"
+        ),
+        "upwelling_ratio_basin": Input(
+            "ratio of all water lifted in the basin to all warm water lost to the abyss", "1"
+        ),
         "advective_depth": Input("advective scale of the thermocline's depth in the subtropics", "m"),
         "diffusive_depth": Input("diffusive scale of the thermocline's depth in the subtropics", "m"),
         "mixed_layer_depth": Input("configured depth of the mixed layer", "m"),

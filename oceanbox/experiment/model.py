@@ -106,8 +106,14 @@ class Model:
         """Start a new ledger from the present state."""
         for entry in self.ledger:
             entry[...] = 0.0
+        self._notice_salt()
         self.opening = State(*(field.copy() for field in self.state))
         self.opened_at = self.clock.seconds
+
+    def _notice_salt(self) -> None:
+        """Carry salt from now on if there is any, whatever the configuration started with."""
+        if self.state.salt.any():
+            self.constants = self.constants._replace(salty=True)
 
     def advance(self, steps: int) -> None:
         """Take ``steps`` steps."""
@@ -205,3 +211,4 @@ class Model:
                     f"{name}: got shape {saved.shape}; this configuration needs {mine.shape}; start from a state of the same grid"
                 )
             mine[...] = saved
+        self._notice_salt()

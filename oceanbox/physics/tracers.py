@@ -33,9 +33,9 @@ def carried(far: float, up: float, down: float, share: float, centred: bool) -> 
 def tracer_flux(h: Array, c: Array, U: Array, V: Array, dt: float, constants: Constants, Fx: Array, Fy: Array) -> None:
     """F = U c on x faces and V c on y faces; c flux-limited, Courant-corrected for a forward step of ``dt``.
 
-    ``dt = 0`` gives the instantaneous flux that a multi-stage scheme needs.  With every Courant number
-    |U| dt/(h dx) + |V| dt/(h dy) below one half a forward step makes no new extremum, and a uniform c stays uniform in
-    any flow because water and tracer move together.
+    ``dt = 0`` gives the instantaneous flux that a multi-stage scheme needs.  A forward step makes no new extremum where the
+    shares s of a cell's water that leave through its faces have sum s (2 - s) <= 1, for which it is enough that at most half of
+    it leaves; a uniform c stays uniform in any flow because water and tracer move together.
     """
     rows, columns = c.shape
     dt_dx = dt / constants.dx

@@ -134,7 +134,7 @@ def push_velocity(
     now: int, before: int, earlier: int, history: int, wind: float, dt: float,
 ) -> None:  # fmt: skip
     """Steps 4 and 5 for every layer; ``wind`` is the fraction of the stress that acts, on the top layer alone."""
-    _, _, _, u, v = state
+    h, _, _, u, v = state
     ax, ay = memory.advection_x, memory.advection_y
     px, py = memory.pressure_x, memory.pressure_y
     sign, periodic = constants.tangential_sign, constants.periodic_x
@@ -150,7 +150,7 @@ def push_velocity(
             work.pressure_x[k], px[before, k], px[earlier, k], px[now, k], forcing.drag_x, history, dt,
         )  # fmt: skip
         fill_x_face_edges(u[k], periodic, sign)
-        volume_transport(hx, hx, hy, u[k], v[k], constants, work.flux_x[k], work.flux_y[k])
+        volume_transport(h[k], hx, hy, u[k], v[k], constants, work.flux_x[k], work.flux_y[k])
         planetary_y(hx, hy, work.flux_x[k], forcing.coriolis, constants, force_y)
         friction(v[k], hy, constants, force_y)
         if k == 0:

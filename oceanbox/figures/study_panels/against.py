@@ -1,0 +1,81 @@
+"""One scalar against another."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from oceanbox.errors import UnreadableResult
+from oceanbox.figures.axes import legend_above
+from oceanbox.figures.study_options import ScalarAgainstScalar
+from oceanbox.figures.study_panels.along_axis import label_scalars
+from oceanbox.figures.study_panels.cases import StudyData
+from oceanbox.figures.study_panels.laws import Law, configured_log_law, fitted_log_law
+from oceanbox.figures.study_panels.marks import CaseColours, show_colours
+from oceanbox.figures.study_panels.points import draw_points, groups, scalar_of, spread_of
+from oceanbox.figures.study_panels.words import short_label
+from oceanbox.figures.style import INK, LINES
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+
+__all__ = ["law_against", "scalar_against_scalar"]
+
+_DASHES = ((0, (4, 1.5)), (0, (1, 1.2)))
+
+
+def scalar_against_scalar(ax: Axes, study: StudyData, options: ScalarAgainstScalar) -> Axes:
+    """One scalar against another, a mark for each case, joined along an axis or coloured by one where asked."""
+    x, y = ((scalar_of(study, name), spread_of(study, name, options.spread)) for name in (options.x, options.y))
+    coloured = options.coloured_by
+    places = study.places(coloured) if coloured is not None else []
+    for place, points in groups(study, x, y, _inner(study, options), options.at):
+        colour = LINES[0].color
+        if coloured is not None:
+            colour = CaseColours.of_places(places)[places[place[str(study.along(coloured).dims[0])]]]
+        draw_points(ax, points, colour, linestyle="solid" if options.joined_along is not None else "none")
+    for law, dashes in zip(law_against(study, options), _DASHES, strict=False):
+        if law.label:
+            ratio, depth = study.select(x[0], options.at).values.ravel(), law.depth.values.ravel()
+            order = np.argsort(ratio)
+            ax.plot(ratio[order], depth[order], color=INK, linestyle=dashes, linewidth=0.9, label=law.label, zorder=2.5)
+    if coloured is not None:
+        show_colours(ax, CaseColours.legend_of_axis(study.along(coloured), places), frame=ax)
+    if ax.get_legend_handles_labels()[1]:
+        legend_above(ax, frame=ax)
+    ax.set_xlabel(short_label(options.x))
+    ax.set_xscale("log" if options.x_scale == "logarithmic" else "linear")
+    ax.set_yscale("log" if options.y_scale == "logarithmic" else "linear")
+    label_scalars(ax, (options.y,))
+    return ax
+
+
+def law_against(study: StudyData, options: ScalarAgainstScalar) -> list[Law]:
+    """The laws that a panel draws; none unless it asks for one."""
+    if options.theory == "none":
+        return []
+    laws = {
+        "fitted": (fitted_log_law,),
+        "configured": (configured_log_law,),
+        "both": (fitted_log_law, configured_log_law),
+    }
+    if options.x == "upwelling_ratio_tropics":
+        return [law(study, options.y, "tropics", options.at) for law in laws[options.parameters]]
+    return [law(study, options.y, "basin", options.at) for law in laws[options.parameters]]
+
+
+def _inner(study: StudyData, options: ScalarAgainstScalar) -> list[str]:
+    """The dimensions along which marks are drawn together, in one colour and, where asked, joined."""
+    dims = [str(dim) for dim in study.select(study.done, options.at).dims]
+    coloured = [] if options.coloured_by is None else [str(dim) for dim in study.along(options.coloured_by).dims]
+    joined = options.joined_along
+    if joined is None:
+        return [dim for dim in dims if dim not in coloured]
+    if joined not in dims or joined in coloured:
+        free = [dim for dim in dims if dim not in coloured]
+        raise UnreadableResult(
+            f"joined_along {joined}: got no such axis, or the one that colours; marks can be joined along "
+            f"{', '.join(free) or 'none'}; name one of these"
+        )
+    return [joined]

@@ -1,0 +1,256 @@
+"""The caption that goes beside a figure of a study: what it shows, of which cases, and what to be careful about."""
+
+from __future__ import annotations
+
+import textwrap
+from collections.abc import Sequence
+from typing import TYPE_CHECKING
+
+import yaml
+
+from oceanbox import names
+from oceanbox.diagnostics.theory_inputs import THEORY_INPUTS
+from oceanbox.figures.study_options import (
+    Branches,
+    BudgetBars,
+    CaseMaps,
+    CasePanelOptions,
+    CaseSeries,
+    EquatorialSections,
+    LatitudeLines,
+    ScalarAgainstScalar,
+    ScalarAlongAxis,
+    ScalarMap,
+    StudyPanel,
+    Switches,
+)
+from oceanbox.figures.study_panels.against import law_against
+from oceanbox.figures.study_panels.along_axis import law_along, second_axis
+from oceanbox.figures.study_panels.bars import TERM_WORDS
+from oceanbox.figures.study_panels.branches import measure_of
+from oceanbox.figures.study_panels.case_maps import cases_shown
+from oceanbox.figures.study_panels.cases import StudyData
+from oceanbox.figures.study_panels.laws import Law
+from oceanbox.figures.study_panels.marks import axis_label, varying_number
+from oceanbox.figures.study_panels.sensitivity import has_indices
+from oceanbox.figures.study_panels.switches import CONTROL, SOUND, record_of, shown_switches, time_words
+from oceanbox.output.provenance import IDENTITY_ATTRIBUTE
+
+if TYPE_CHECKING:
+    from oceanbox.figures.study_page import StudyPage
+
+__all__ = ["study_caption", "study_name", "study_sentence"]
+
+_NOT_STATED = "not stated in the file"
+_FINDINGS = ("oceanbox_branch_findings", "oceanbox_switch_findings", "oceanbox_sensitivity_findings")
+
+
+def study_name(study: StudyData) -> str:
+    """Name of a study from its file among the attributes, or its title; 'study' where neither states one."""
+    text = study.dataset.attrs.get("oceanbox_study")
+    tree = yaml.safe_load(text) if isinstance(text, str) else None
+    name = tree.get("name") if isinstance(tree, dict) else None
+    title = str(study.dataset.attrs.get("title", ""))
+    return str(name or title.removeprefix("oceanbox study: ") or "study")
+
+
+def study_caption(study: StudyData, page: StudyPage) -> str:
+    """The whole caption as plain text, wrapped, one paragraph each for panels, cases and findings."""
+    panels = [
+        f"({letter}) {study_sentence(study, panel)}" if (letter := page.letter(index)) else study_sentence(study, panel)
+        for index, panel in enumerate(page.panels)
+    ]
+    findings = [
+        str(study.dataset.attrs[name]).replace("\n", ". ") + "." for name in _FINDINGS if study.dataset.attrs.get(name)
+    ]
+    paragraphs = (" ".join(panels), _provenance(study), " ".join(findings))
+    return "\n\n".join(textwrap.fill(text, 100, break_long_words=False) for text in paragraphs if text) + "\n"
+
+
+def study_sentence(study: StudyData, panel: StudyPanel) -> str:
+    """What one panel shows."""
+    match panel:
+        case ScalarAlongAxis():
+            text = _along(study, panel)
+        case ScalarAgainstScalar():
+            text = _against(study, panel)
+        case ScalarMap():
+            x, y = panel.x_axis or study.first_axis(0), panel.y_axis or study.first_axis(1)
+            text = (
+                f"{_sentence_case(_long_name(panel.scalar))}, over {_axis(study, x)} and {_axis(study, y)}. Contours are "
+                "linear between the cases, which are the dots."
+            )
+        case EquatorialSections():
+            what = "Thermocline depth" if panel.field == "thermocline_depth" else "Surface temperature"
+            text = f"{what} along the equator, mean within 2° of it.{_lines(study, panel)}"
+        case LatitudeLines():
+            text = f"{_sentence_case(names.lookup(panel.field).long_name)}.{_lines(study, panel)}"
+        case CaseMaps():
+            text = _maps(study, panel)
+        case BudgetBars():
+            text = _bars(study, panel)
+        case CaseSeries():
+            text = f"{_sentence_case(_long_name(panel.scalar))}, against model time.{_lines(study, panel)}"
+        case Branches():
+            text = _branches(study, panel)
+        case Switches():
+            text = _switches(study, panel)
+        case _:
+            text = _sensitivities(study, panel.scalar)
+    return text + _places(panel.at)
+
+
+def _along(study: StudyData, panel: ScalarAlongAxis) -> str:
+    axis = panel.axis or study.first_axis()
+    what = "; ".join(_long_name(name) for name in panel.scalars)
+    other = second_axis(study, axis, panel.at)
+    against = f", against {_axis(study, axis)}" if axis != "case_name" else " of each case"
+    colours = f"; one line for each {_axis(study, other)}" if other is not None else ""
+    bars = " Bars: one standard deviation within the window." if panel.spread == "bars" else ""
+    law = law_along(study, panel)
+    return f"{_sentence_case(what)}{against}{colours}.{bars}{_law_words([law] if law is not None else [])}"
+
+
+def _against(study: StudyData, panel: ScalarAgainstScalar) -> str:
+    text = f"{_sentence_case(_long_name(panel.y))}, against {_long_name(panel.x)}; a mark for each case."
+    if panel.joined_along is not None:
+        text += f" Lines join cases along {_axis(study, panel.joined_along)}."
+    if panel.coloured_by is not None:
+        text += f" Colour: {_axis(study, panel.coloured_by)}."
+    if panel.spread == "bars":
+        text += " Bars: one standard deviation within the window."
+    return text + _law_words(law_against(study, panel))
+
+
+def _law_words(laws: Sequence[Law]) -> str:
+    text, before = "", ""
+    for line, law in zip(("Dashed", "Dotted"), laws, strict=False):
+        if law.label:
+            text += f" {line}: {'the same' if law.formula == before else law.formula}, {law.fit}"
+        else:
+            text += f" There is {law.formula}: {law.fit}"
+        before = law.formula
+    return text
+
+
+def _lines(study: StudyData, panel: CasePanelOptions) -> str:
+    """What tells the lines of a panel apart."""
+    cases = study.cases(panel.at, panel.cases)
+    axis = varying_number(cases)
+    colour = f" Colour: {_axis(study, axis)}." if axis is not None else ""
+    dashed = " Dashed: not in equilibrium." if any(not case.settled for case in cases) else ""
+    return f" One line for each of {len(cases)} cases.{colour}{dashed}"
+
+
+def _maps(study: StudyData, panel: CaseMaps) -> str:
+    cases, long_name = cases_shown(study, panel), names.lookup(panel.field).long_name
+    axis = varying_number(cases)
+    what = f"Maps of {long_name}"
+    if panel.minus_case is not None:
+        what += f", each minus that of the case {panel.minus_case}"
+    by = f", for each {_axis(study, axis)}" if axis is not None else ""
+    unsettled = [case.name for case in cases if not case.settled]
+    reserved = f" Not in equilibrium: {', '.join(unsettled)}." if unsettled else ""
+    return f"{what}{by}.{reserved}"
+
+
+def _bars(study: StudyData, panel: BudgetBars) -> str:
+    cases = study.cases(panel.at, panel.cases)
+    axis = varying_number(cases)
+    group = names.lookup(panel.terms[0]).group.removesuffix("_budget")
+    text = (
+        f"Terms of the {group} budget integrated over {_and([name.replace('_', ' ') for name in panel.regions])}, positive "
+        "where the warm layer gains."
+    )
+    if any(TERM_WORDS[term] == "storage" for term in panel.terms):
+        text += " Storage is the sum of all others."
+    text += f" Colour: {_axis(study, axis)}." if axis is not None else " A bar for each case."
+    return text + (" Hatched: not in equilibrium." if any(not case.settled for case in cases) else "")
+
+
+def _branches(study: StudyData, panel: Branches) -> str:
+    scalar = panel.scalar or measure_of(study)
+    text = (
+        f"{_sentence_case(_long_name(scalar))}, for each {_axis(study, 'parameter')}, on the way up and on the way down, each "
+        "case started from the equilibrium before it."
+    )
+    if panel.spread == "bars":
+        text += " Bars: one standard deviation within the window."
+    if "jump_lower" in study.dataset:
+        low, high = study.dataset["jump_lower"].values, study.dataset["jump_upper"].values
+        widths = _and([f"{a:.6g} to {b:.6g}" for a, b in zip(low, high, strict=True)])
+        text += f" Bands bracket jumps, in the colour of the way on which they were met: {widths}."
+    if f"probe_{scalar}" in study.dataset:
+        text += " Small dots: cases run to bracket them."
+    return text
+
+
+def _switches(study: StudyData, panel: Switches) -> str:
+    text = f"{_sentence_case(_long_name(panel.scalar))}, after each switch at time zero. Dots: means over intervals."
+    if CONTROL in study.places("switch"):
+        text += " Grey: the run in which nothing changes."
+    fits = []
+    for name in shown_switches(study, panel):
+        record, shown = record_of(study, name, panel.scalar), name.replace("_", " ")
+        if record.trust == SOUND:
+            error = time_words(record.e_folding_error)
+            fits.append(f"{shown}, e-folding time {time_words(record.e_folding)} with a standard error of {error}")
+        else:
+            fits.append(f"{shown}, {record.trust or 'no fit'}")
+    return f"{text} Line and diamond: exponential fit and its e-folding time. {_sentence_case('; '.join(fits))}."
+
+
+def _sensitivities(study: StudyData, scalar: str) -> str:
+    if has_indices(study, scalar):
+        interval = str(study.dataset[f"sobol_total_lower_{scalar}"].attrs.get("long_name", "")).rpartition(" of its ")[
+            2
+        ]
+        return (
+            f"Sobol' indices of {_long_name(scalar)}: the share of its variance that each key causes alone (first order) and "
+            f"together with its interactions (total). Bars: {interval or 'interval'} from the bootstrap."
+        )
+    return (
+        f"Elasticities of {_long_name(scalar)}: its relative change for a small relative change of each key. Bars: error from "
+        "the size of the step."
+    )
+
+
+def _provenance(study: StudyData) -> str:
+    status = study.dataset["status"]
+    done, failed = int(study.done.sum()), int(study.failed.sum())
+    unsettled = int((study.done & ~study.settled).sum())
+    parts = [f"Study {study_name(study)}: {status.size} cases, {done} with a result"]
+    if failed:
+        parts.append(f"{failed} failed (crosses)")
+    if waiting := status.size - done - failed:
+        parts.append(f"{waiting} not run")
+    state = f"{unsettled} of those with a result did not reach equilibrium (open marks)" if unsettled else ""
+    if not unsettled and "ending" in study.dataset:
+        sought = int((study.dataset["ending"].values[study.done.values] == "equilibrium").sum())
+        state = "all of these in equilibrium" if sought == done and done else ""
+        if done and sought < done:
+            state = f"an equilibrium was not looked for in {done - sought} of these"
+    identity = study.dataset.attrs.get(IDENTITY_ATTRIBUTE, _NOT_STATED)
+    return f"{', '.join([*parts, *([state] if state else [])])}. Base configuration identity {identity}."
+
+
+def _long_name(name: str) -> str:
+    return THEORY_INPUTS[name].long_name if name in THEORY_INPUTS else names.lookup(name).long_name
+
+
+def _axis(study: StudyData, axis: str) -> str:
+    """An axis in words, without its unit."""
+    words = axis_label(study.along(axis)).rpartition(" (")[0] or axis_label(study.along(axis))
+    return words[:1].lower() + words[1:]
+
+
+def _places(at: Sequence[str]) -> str:
+    return f" At {_and([place.replace('=', ' = ') for place in at])}." if at else ""
+
+
+def _and(words: Sequence[str]) -> str:
+    return " and ".join([", ".join(words[:-1]), words[-1]] if len(words) > 1 else words)
+
+
+def _sentence_case(text: str) -> str:
+    return text[:1].upper() + text[1:]
