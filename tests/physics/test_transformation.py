@@ -243,7 +243,7 @@ def constants() -> Constants:
     theta=st.floats(-3.0, 30.0),
     warmed=st.floats(0.5, 2.0),
     sigma=st.floats(-5.0, 5.0),
-    lost=st.floats(0.0, 1e4),
+    lost=st.one_of(st.just(0.0), st.floats(1e-12, 1e4)),
     rain=st.floats(-10.0, 10.0),
     scale=st.one_of(st.just(float("inf")), st.floats(1.0, 20.0)),
 )
