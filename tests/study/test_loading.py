@@ -75,10 +75,11 @@ def test_names_that_start_alike_do_not_overlap(tmp_path: Path) -> None:
     (tmp_path / "tiny.yaml").write_text(TINY, encoding="utf-8")
     path = tmp_path / "study.yaml"
     path.write_text(
-        HEAD + "axes:\n  - {name: a, key: evolve.duration_days, values: [1.0, 2.0]}\n"
-        "  - {name: b, key: entrainment.upwelling, values: [null, {}], positions: [off, on]}\n"
+        HEAD + "axes:\n  - {name: a, key: numerics.step_s, values: [1000.0, 2000.0]}\n"
+        "  - {name: b, key: numerics.step_safety, values: [0.5, 0.6]}\n"
+        "  - {name: c, key: entrainment.upwelling, values: [null, {}], positions: [off, on]}\n"
     )
-    assert len(load_study(path).cases) == 4
+    assert len(load_study(path).cases) == 8
 
 
 def test_a_rule_between_keys_that_only_some_cases_break_names_the_case(tmp_path: Path) -> None:

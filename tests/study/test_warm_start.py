@@ -9,7 +9,7 @@ from oceanbox.output.files import read_dataset
 from oceanbox.study.collecting import collect
 from oceanbox.study.executing import execute
 from oceanbox.study.plan import folder_of
-from oceanbox.study.status import result_of, state_of
+from oceanbox.study.status import CaseStatus, State, result_of, state_of, write_status
 from tests.study.oceans import TARGETS, HereEngine, study_of
 
 WARM = {"axes": [TARGETS | {"values": [15.0, 25.0, 17.0]}], "warm_start": "nearest"}
@@ -37,3 +37,16 @@ def test_a_warm_start_is_from_the_nearest_finished_case_and_every_record_says_so
     again = HereEngine()
     execute(loaded.cases, tmp_path, again)
     assert again.ran == []
+
+
+def test_an_interrupted_warm_case_goes_on_from_where_it_once_started(tmp_path: Path) -> None:
+    """By then a nearer case may be finished; its state would not fit the checkpoint."""
+    loaded = study_of(tmp_path, WARM)
+    cold, warmer, between = loaded.cases
+    execute([cold, warmer], tmp_path, HereEngine())
+    far = folder_of(warmer, tmp_path).relative_to(tmp_path).as_posix()
+    write_status(between, tmp_path, CaseStatus(State.WAITING, reason="interrupted", started_from=far))
+    (folder_of(between, tmp_path) / "checkpoint.nc").touch()
+    engine = HereEngine()
+    execute(loaded.cases, tmp_path, engine)
+    assert [task.start for task in engine.ran] == [state_of(warmer, tmp_path)]
