@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
 from difflib import get_close_matches
 from pathlib import Path
@@ -13,6 +13,8 @@ from oceanbox.config import load as load_config
 from oceanbox.config.validating import validate
 from oceanbox.config.yaml_tree import Node, plain, read_tree
 from oceanbox.errors import ConfigError, Fault
+from oceanbox.figures.study_page import StudyPage, axis_faults, study_pages
+from oceanbox.study.places import place_of_cases
 from oceanbox.study.plan import Case, cases_of
 from oceanbox.study.schema import PLANS, Study, overlap
 from oceanbox.study.threshold_plans import THRESHOLD_PLANS, planned_cases
@@ -66,6 +68,7 @@ class LoadedStudy:
 
     base      the configuration that is varied, with `study.changes`, and where its values were written
     cases     those that are known before anything runs; a branch study may add some to refine its jumps
+    pages     the figures that are wanted
     """
 
     study: Study
@@ -74,6 +77,7 @@ class LoadedStudy:
     base: Config
     base_source: Source
     cases: tuple[Case, ...]
+    pages: tuple[StudyPage, ...]
 
     def relocated(self, error: ConfigError) -> ConfigError:
         """Faults about keys of a configuration, told of the place in the study file that sets the key."""
@@ -103,10 +107,12 @@ def load_study(path: str | Path) -> LoadedStudy:
         cases = planned_cases(study, base) if study.plan in THRESHOLD_PLANS else cases_of(study, base)
     except ConfigError as error:
         faults += [_relocated(study, source, loaded.source, fault) for fault in error.faults]
-    faults += [replace(fault, location=source.locate("fields")) for fault in _grid_faults(study, cases)]
+    pages, page_faults = _pages(study, path.parent, cases)
+    for fault in (*_grid_faults(study, cases), *page_faults):
+        faults.append(fault if fault.location else replace(fault, location=source.locate(fault.key)))
     if faults:
         raise _sorted(faults)
-    return LoadedStudy(study, path, source, base, loaded.source, tuple(cases))
+    return LoadedStudy(study, path, source, base, loaded.source, tuple(cases), pages)
 
 
 def check_cases(loaded: LoadedStudy, cases: Iterable[Case]) -> list[str]:
@@ -117,7 +123,8 @@ def check_cases(loaded: LoadedStudy, cases: Iterable[Case]) -> list[str]:
     from oceanbox.experiment.api import check
 
     faults: dict[tuple[str, str], Fault] = {}
-    warnings: dict[tuple[str, str], str] = {}
+    warnings: dict[tuple[str, str], list[tuple[str, Fault]]] = {}
+    cases = list(cases)
     for case in cases:
         try:
             found = check(case.config).warnings
@@ -129,10 +136,17 @@ def check_cases(loaded: LoadedStudy, cases: Iterable[Case]) -> list[str]:
                 )
             continue
         for warning in found:
-            warnings.setdefault((warning.key, warning.allowed), f"case {case.name}: {warning}")
+            warnings.setdefault((warning.key, warning.allowed), []).append((case.name, warning))
     if faults:
         raise _sorted(faults.values())
-    return list(warnings.values())
+    return [_warning(found, len(cases)) for found in warnings.values()]
+
+
+def _warning(found: Sequence[tuple[str, Fault]], total: int) -> str:
+    """One warning for all the cases that have it."""
+    name, first = found[0]
+    which = "all cases" if len(found) == total else f"{len(found)} of {total} cases, first {name}"
+    return f"{which}: {first}"
 
 
 def _read(path: Path) -> Node:
@@ -182,7 +196,18 @@ def _field_faults(study: Study) -> list[Fault]:
     return faults
 
 
-def _grid_faults(study: Study, cases: Iterable[Case]) -> list[Fault]:
+def _pages(study: Study, folder: Path, cases: Sequence[Case]) -> tuple[tuple[StudyPage, ...], list[Fault]]:
+    """The pages of a study, and what is wrong with them; `cases` is empty where they could not be built."""
+    try:
+        pages = study_pages(study.pages, folder)
+    except ConfigError as error:
+        return (), list(error.faults)
+    if not cases or study.plan not in ("axes", "sample", "cases"):
+        return pages, []
+    return pages, axis_faults(pages, list(place_of_cases(study, cases).coordinates))
+
+
+def _grid_faults(study: Study, cases: Sequence[Case]) -> list[Fault]:
     """Fields of different grids cannot stand in one variable."""
     grids = {
         (basin.width_km, basin.south_km, basin.north_km, basin.cells_x, basin.cells_y)

@@ -14,6 +14,7 @@ import xarray as xr
 from oceanbox.config import identity, resolved_yaml
 from oceanbox.experiment.outcome import Ending
 from oceanbox.experiment.results import REFERENCES
+from oceanbox.figures.study_page import draw_study
 from oceanbox.output.files import whole_file
 from oceanbox.output.provenance import global_attributes
 from oceanbox.study.collecting import collect, write_collected, write_table
@@ -27,6 +28,8 @@ from oceanbox.study.status import CaseStatus, State, status_of
 from oceanbox.study.threshold_plans import THRESHOLD_PLANS, Gathered, gather
 
 __all__ = ["StudyOutcome", "default_folder", "dry_run", "run_study", "study_attributes"]
+
+FIGURES = "figures"
 
 
 @dataclass(frozen=True)
@@ -93,7 +96,7 @@ def run_study(
     report: Callable[[StudyProgress], None] = quiet,
     tell: Callable[[str], None] = lambda line: None,
 ) -> StudyOutcome:
-    """Run what is missing of a study, collect all of it, write its table and its methods section.
+    """Run what is missing of a study, collect all of it, write its table and its methods section, draw its pages.
 
     into         its folder; ``results/<name>`` where not given
     workers      processes on this machine; as many as it has processors where not given
@@ -186,4 +189,5 @@ def _written(loaded: LoadedStudy, folder: Path, gathered: Gathered) -> StudyOutc
         write_table(dataset, folder),
         write_methods(loaded.study, loaded.base, gathered.statuses, folder),
     )
-    return StudyOutcome(folder, dataset, paths, gathered.statuses, gathered.findings)
+    figures = draw_study(dataset, folder, loaded.pages, folder / FIGURES)
+    return StudyOutcome(folder, dataset, (*paths, *figures), gathered.statuses, gathered.findings)
