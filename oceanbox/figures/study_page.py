@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Any
@@ -23,7 +23,7 @@ if TYPE_CHECKING:
 
     from oceanbox.figures.saving import Format
 
-__all__ = ["StudyPage", "draw_study", "load_study_page", "study_pages"]
+__all__ = ["StudyPage", "axis_faults", "draw_study", "load_study_page", "study_pages"]
 
 
 class StudyPage(Page):
@@ -62,6 +62,22 @@ def study_pages(entries: Sequence[Mapping[str, Any] | str], folder: Path) -> tup
     if faults:
         raise ConfigError(faults)
     return tuple(pages)
+
+
+def axis_faults(pages: Sequence[StudyPage], axes: Sequence[str]) -> list[Fault]:
+    """A fault for each axis that a panel names and the study does not have, found before anything runs.
+
+    axes  names of the axes of the study, and of the numbers that vary where it has none
+    """
+    found: list[Fault] = []
+    for page_number, page in enumerate(pages):
+        for number, panel in enumerate(page.panels):
+            for key, axis in _named_axes(panel):
+                if axis not in (*axes, "case_name"):
+                    place = f"pages.{page_number}.panels.{number}.{key}"
+                    rule = f"must be an axis of the study: {', '.join(axes)}"
+                    found.append(Fault("", place, axis, rule, "name one of these"))
+    return found
 
 
 def load_study_page(path: str | Path) -> StudyPage:
@@ -105,6 +121,16 @@ def draw_study(
 
     study = open_study(collected, folder)
     return [path for page in pages for path in save_study_page(study, page, into, formats)]
+
+
+def _named_axes(panel: StudyPanel) -> Iterator[tuple[str, str]]:
+    """The axes that a panel names, with the keys that do."""
+    for key in ("axis", "x_axis", "y_axis", "coloured_by", "joined_along"):
+        axis = getattr(panel, key, None)
+        if axis is not None:
+            yield key, axis
+    for index, place in enumerate(panel.at):
+        yield f"at.{index}", place.partition("=")[0]
 
 
 def _within(fault: Fault, inside: str, index: int) -> Fault:

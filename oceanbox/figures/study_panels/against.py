@@ -7,9 +7,9 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from oceanbox.errors import UnreadableResult
-from oceanbox.figures.axes import legend_above
 from oceanbox.figures.study_options import ScalarAgainstScalar
 from oceanbox.figures.study_panels.along_axis import label_scalars
+from oceanbox.figures.study_panels.axes import legend_over, set_scale
 from oceanbox.figures.study_panels.cases import StudyData
 from oceanbox.figures.study_panels.laws import Law, configured_log_law, fitted_log_law
 from oceanbox.figures.study_panels.marks import CaseColours, show_colours
@@ -42,11 +42,10 @@ def scalar_against_scalar(ax: Axes, study: StudyData, options: ScalarAgainstScal
             ax.plot(ratio[order], depth[order], color=INK, linestyle=dashes, linewidth=0.9, label=law.label, zorder=2.5)
     if coloured is not None:
         show_colours(ax, CaseColours.legend_of_axis(study.along(coloured), places), frame=ax)
-    if ax.get_legend_handles_labels()[1]:
-        legend_above(ax, frame=ax)
+    legend_over(ax, frame=ax)
     ax.set_xlabel(short_label(options.x))
-    ax.set_xscale("log" if options.x_scale == "logarithmic" else "linear")
-    ax.set_yscale("log" if options.y_scale == "logarithmic" else "linear")
+    set_scale(ax, "x", options.x_scale)
+    set_scale(ax, "y", options.y_scale)
     label_scalars(ax, (options.y,))
     return ax
 

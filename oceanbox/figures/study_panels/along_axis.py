@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
 from oceanbox.errors import UnreadableResult
-from oceanbox.figures.axes import label_y, legend_above
 from oceanbox.figures.study_options import DEPTH, ScalarAlongAxis
+from oceanbox.figures.study_panels.axes import legend_over, set_names, set_scale
 from oceanbox.figures.study_panels.cases import StudyData
 from oceanbox.figures.study_panels.laws import Law, configured_log_law, fitted_log_law, scale_law
 from oceanbox.figures.study_panels.marks import CaseColours, axis_label, show_colours
@@ -22,7 +22,7 @@ from oceanbox.figures.study_panels.points import (
     scalar_of,
     spread_of,
 )
-from oceanbox.figures.study_panels.words import LABELS, label_of, short_label, unit_of
+from oceanbox.figures.study_panels.words import LABELS, label_of, short_label, shown_name, unit_of
 from oceanbox.figures.style import INK, LINES
 
 if TYPE_CHECKING:
@@ -45,18 +45,19 @@ def scalar_along_axis(ax: Axes, study: StudyData, options: ScalarAlongAxis) -> A
         )
     places = study.places(other) if other is not None else []
     # Beside a law the cases are marks alone: their line would hide it.
-    dashes = "none" if options.theory != "none" or not is_ordered(along) else None
+    law = law_along(study, options)
+    dashes = "none" if (law is not None and law.label) or not is_ordered(along) else None
     labels = _labels(options.scalars)
     for name, line, marker in zip(options.scalars, LINES, _MARKERS, strict=False):
         y = scalar_of(study, name), spread_of(study, name, options.spread)
         for place, points in groups(study, (positions(study, axis), None), y, _names(along.dims), options.at):
             colour = CaseColours.of_places(places)[places[place[other]]] if other is not None else line.color
             draw_points(ax, points, colour, label=labels[name], linestyle=dashes or line.linestyle, marker=marker)
-    _draw_law(ax, study, options, axis, other)
+    if law is not None and law.label:
+        _draw_law(ax, study, law, options, axis)
     if other is not None:
         show_colours(ax, CaseColours.legend_of_axis(study.along(other), places), frame=ax)
-    if ax.get_legend_handles_labels()[1]:
-        legend_above(ax, frame=ax)
+    legend_over(ax, frame=ax)
     _finish(ax, study, options, axis)
     label_scalars(ax, options.scalars)
     return ax
@@ -91,7 +92,7 @@ def second_axis(study: StudyData, axis: str, at: Sequence[str]) -> str | None:
 def label_scalars(ax: Axes, scalars: Sequence[str]) -> None:
     """Label the y axis by a scalar, or by what several have in common; depths point downward."""
     depths = all(name.startswith(DEPTH) for name in scalars)
-    label_y(ax, short_label(scalars[0]) if len(scalars) == 1 else label_of(_common(scalars), unit_of(scalars[0])))
+    ax.set_ylabel(short_label(scalars[0]) if len(scalars) == 1 else label_of(_common(scalars), unit_of(scalars[0])))
     if depths:
         ax.yaxis.set_inverted(True)
 
@@ -116,11 +117,11 @@ def _common(scalars: Sequence[str]) -> str:
     return {"PW": "Heat flux", "Sv": "Volume transport"}.get(unit_of(scalars[0]).unit, "Value")
 
 
-def _draw_law(ax: Axes, study: StudyData, options: ScalarAlongAxis, axis: str, other: str | None) -> None:
-    law = law_along(study, options)
-    if law is None or not law.label:
-        return
-    label = law.label
+def _draw_law(ax: Axes, study: StudyData, law: Law, options: ScalarAlongAxis, axis: str) -> None:
+    other = second_axis(study, axis, options.at)
+    style: dict[str, Any] = {"linestyle": _LAW_DASHES, "linewidth": 0.9}
+    if not is_ordered(study.along(axis)):
+        style = {"linestyle": "none", "marker": "_", "markersize": 9.0}
     depth = law.depth / unit_of(options.scalars[0]).divisor
     places = study.places(other) if other is not None else []
     y = depth, depth * np.nan
@@ -132,12 +133,10 @@ def _draw_law(ax: Axes, study: StudyData, options: ScalarAlongAxis, axis: str, o
             points.x[known],
             points.y[known],
             color=colour,
-            linestyle=_LAW_DASHES,
-            linewidth=0.9,
-            label=label,
             zorder=2.5,
+            **style,
         )
-        label = "_nolegend_"
+    ax.plot([], [], color=INK, label=law.label, **style)
 
 
 def _finish(ax: Axes, study: StudyData, options: ScalarAlongAxis, axis: str) -> None:
@@ -146,10 +145,10 @@ def _finish(ax: Axes, study: StudyData, options: ScalarAlongAxis, axis: str) -> 
     across = [dim for dim in failed.dims if dim not in along.dims]
     mark_failed(ax, x.values[failed.any(across).values])
     if along.dtype.kind not in "fiu":
-        ax.set_xticks(x.values, [str(value) for value in along.values])
-        ax.set_xlim(-0.5, along.size - 0.5)
-    elif options.axis_scale == "logarithmic":
-        ax.set_xscale("log")
+        set_names(ax, [shown_name(str(value)) for value in along.values])
+    else:
+        set_scale(ax, "x", options.axis_scale)
+    set_scale(ax, "y", "linear")
     ax.set_xlabel("" if axis == "case_name" else axis_label(along))
 
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 import numpy as np
+from matplotlib.ticker import MaxNLocator
 
 from oceanbox import names
 from oceanbox.errors import UnreadableResult
@@ -21,6 +22,7 @@ if TYPE_CHECKING:
 __all__ = ["MOST_BARS", "TERM_WORDS", "budget_bars"]
 
 MOST_BARS = 12
+_HEADROOM = 0.1  # of the range of the bars and for each region, kept free for the name of the region
 _WIDTH = 0.8  # of all bars of a term together
 
 TERM_WORDS = {
@@ -77,10 +79,12 @@ def budget_bars(ax: Axes, study: StudyData, options: BudgetBars) -> Axes:
             )
     for inner, region in zip(frames, options.regions, strict=True):
         mark_zero(inner)
+        inner.yaxis.set_major_locator(MaxNLocator(nbins=4 if len(frames) > 1 else 8, steps=[1, 2, 5, 10]))
         inner.set_xlim(-0.5, len(options.terms) - 0.5)
         inner.tick_params(axis="x", length=0.0)
         words = region.replace("_", " ")
-        inner.margins(y=0.12)
+        low, high = inner.get_ylim()
+        inner.set_ylim(low, high + _HEADROOM * len(frames) * (high - low))
         inner.text(0.99, 0.94, words[:1].upper() + words[1:], transform=inner.transAxes, ha="right", va="top")
         label_y(inner, label_of("Gain", unit))
     frames[-1].set_xticks(centres, [TERM_WORDS[term] for term in options.terms])

@@ -27,13 +27,15 @@ from oceanbox.figures.study_options import (
 from oceanbox.figures.study_panels.against import law_against
 from oceanbox.figures.study_panels.along_axis import law_along, second_axis
 from oceanbox.figures.study_panels.bars import TERM_WORDS
-from oceanbox.figures.study_panels.branches import measure_of
+from oceanbox.figures.study_panels.branches import jumps_of, measure_of
 from oceanbox.figures.study_panels.case_maps import cases_shown
 from oceanbox.figures.study_panels.cases import StudyData
 from oceanbox.figures.study_panels.laws import Law
 from oceanbox.figures.study_panels.marks import axis_label, varying_number
+from oceanbox.figures.study_panels.points import is_ordered
 from oceanbox.figures.study_panels.sensitivity import has_indices
 from oceanbox.figures.study_panels.switches import CONTROL, SOUND, record_of, shown_switches, time_words
+from oceanbox.figures.study_panels.words import pretty, shown_name
 from oceanbox.output.provenance import IDENTITY_ATTRIBUTE
 
 if TYPE_CHECKING:
@@ -60,9 +62,8 @@ def study_caption(study: StudyData, page: StudyPage) -> str:
         f"({letter}) {study_sentence(study, panel)}" if (letter := page.letter(index)) else study_sentence(study, panel)
         for index, panel in enumerate(page.panels)
     ]
-    findings = [
-        str(study.dataset.attrs[name]).replace("\n", ". ") + "." for name in _FINDINGS if study.dataset.attrs.get(name)
-    ]
+    found = "\n".join(str(study.dataset.attrs.get(name, "")) for name in _FINDINGS)
+    findings = [f"{_sentence_case(line)}." for line in found.splitlines() if line]
     paragraphs = (" ".join(panels), _provenance(study), " ".join(findings))
     return "\n\n".join(textwrap.fill(text, 100, break_long_words=False) for text in paragraphs if text) + "\n"
 
@@ -97,18 +98,19 @@ def study_sentence(study: StudyData, panel: StudyPanel) -> str:
             text = _switches(study, panel)
         case _:
             text = _sensitivities(study, panel.scalar)
-    return text + _places(panel.at)
+    return text + _places(study, panel.at)
 
 
 def _along(study: StudyData, panel: ScalarAlongAxis) -> str:
     axis = panel.axis or study.first_axis()
     what = "; ".join(_long_name(name) for name in panel.scalars)
     other = second_axis(study, axis, panel.at)
-    against = f", against {_axis(study, axis)}" if axis != "case_name" else " of each case"
+    against = f", against {_axis(study, axis)}" if axis != "case_name" else ", of each case"
     colours = f"; one line for each {_axis(study, other)}" if other is not None else ""
     bars = " Bars: one standard deviation within the window." if panel.spread == "bars" else ""
     law = law_along(study, panel)
-    return f"{_sentence_case(what)}{against}{colours}.{bars}{_law_words([law] if law is not None else [])}"
+    line = "Dashed" if is_ordered(study.along(axis)) else "Black bars"
+    return f"{_sentence_case(what)}{against}{colours}.{bars}{_law_words([law] if law is not None else [], [line])}"
 
 
 def _against(study: StudyData, panel: ScalarAgainstScalar) -> str:
@@ -122,9 +124,10 @@ def _against(study: StudyData, panel: ScalarAgainstScalar) -> str:
     return text + _law_words(law_against(study, panel))
 
 
-def _law_words(laws: Sequence[Law]) -> str:
+def _law_words(laws: Sequence[Law], lines: Sequence[str] = ("Dashed", "Dotted")) -> str:
+    """Each law that is drawn, by its line, and each that could not be."""
     text, before = "", ""
-    for line, law in zip(("Dashed", "Dotted"), laws, strict=False):
+    for line, law in zip(lines, laws, strict=False):
         if law.label:
             text += f" {line}: {'the same' if law.formula == before else law.formula}, {law.fit}"
         else:
@@ -171,15 +174,14 @@ def _bars(study: StudyData, panel: BudgetBars) -> str:
 def _branches(study: StudyData, panel: Branches) -> str:
     scalar = panel.scalar or measure_of(study)
     text = (
-        f"{_sentence_case(_long_name(scalar))}, for each {_axis(study, 'parameter')}, on the way up and on the way down, each "
+        f"{_sentence_case(_long_name(scalar))}, against {_axis(study, 'parameter')}, on the way up and on the way down, each "
         "case started from the equilibrium before it."
     )
     if panel.spread == "bars":
         text += " Bars: one standard deviation within the window."
-    if "jump_lower" in study.dataset:
-        low, high = study.dataset["jump_lower"].values, study.dataset["jump_upper"].values
-        widths = _and([f"{a:.6g} to {b:.6g}" for a, b in zip(low, high, strict=True)])
-        text += f" Bands bracket jumps, in the colour of the way on which they were met: {widths}."
+    if jumps := jumps_of(study):
+        widths = _and([f"{jump.lower:.6g} to {jump.upper:.6g} on the way {jump.way}" for jump in jumps])
+        text += f" Arrows are jumps, in bands that bracket them: {widths}."
     if f"probe_{scalar}" in study.dataset:
         text += " Small dots: cases run to bracket them."
     return text
@@ -191,13 +193,15 @@ def _switches(study: StudyData, panel: Switches) -> str:
         text += " Grey: the run in which nothing changes."
     fits = []
     for name in shown_switches(study, panel):
-        record, shown = record_of(study, name, panel.scalar), name.replace("_", " ")
+        record, shown = record_of(study, name, panel.scalar), shown_name(name)
         if record.trust == SOUND:
-            error = time_words(record.e_folding_error)
-            fits.append(f"{shown}, e-folding time {time_words(record.e_folding)} with a standard error of {error}")
+            fits.append(f"{shown}, e-folding time {time_words(record.e_folding, record.e_folding_error)}")
         else:
             fits.append(f"{shown}, {record.trust or 'no fit'}")
-    return f"{text} Line and diamond: exponential fit and its e-folding time. {_sentence_case('; '.join(fits))}."
+    return (
+        f"{text} Line and diamond: exponential fit and its e-folding time, with its standard error. "
+        f"{_sentence_case('; '.join(fits))}."
+    )
 
 
 def _sensitivities(study: StudyData, scalar: str) -> str:
@@ -216,20 +220,19 @@ def _sensitivities(study: StudyData, scalar: str) -> str:
 
 
 def _provenance(study: StudyData) -> str:
-    status = study.dataset["status"]
-    done, failed = int(study.done.sum()), int(study.failed.sum())
-    unsettled = int((study.done & ~study.settled).sum())
-    parts = [f"Study {study_name(study)}: {status.size} cases, {done} with a result"]
-    if failed:
-        parts.append(f"{failed} failed (crosses)")
-    if waiting := status.size - done - failed:
+    count = study.counts()
+    parts = [f"Study {study_name(study)}: {count.cases} cases, {count.done} with a result"]
+    if count.failed:
+        parts.append(f"{count.failed} failed (crosses)")
+    if waiting := count.cases - count.done - count.failed:
         parts.append(f"{waiting} not run")
-    state = f"{unsettled} of those with a result did not reach equilibrium (open marks)" if unsettled else ""
-    if not unsettled and "ending" in study.dataset:
-        sought = int((study.dataset["ending"].values[study.done.values] == "equilibrium").sum())
-        state = "all of these in equilibrium" if sought == done and done else ""
-        if done and sought < done:
-            state = f"an equilibrium was not looked for in {done - sought} of these"
+    state = "all of these in equilibrium" if count.done else ""
+    if count.unsettled:
+        state = f"{count.unsettled} of those with a result did not reach equilibrium (open marks)"
+    elif count.not_judged:
+        state = f"an equilibrium was not looked for in {count.not_judged} of these"
+    if count.probes:
+        state += f", {count.probes} more run to bracket jumps"
     identity = study.dataset.attrs.get(IDENTITY_ATTRIBUTE, _NOT_STATED)
     return f"{', '.join([*parts, *([state] if state else [])])}. Base configuration identity {identity}."
 
@@ -244,8 +247,14 @@ def _axis(study: StudyData, axis: str) -> str:
     return words[:1].lower() + words[1:]
 
 
-def _places(at: Sequence[str]) -> str:
-    return f" At {_and([place.replace('=', ' = ') for place in at])}." if at else ""
+def _places(study: StudyData, at: Sequence[str]) -> str:
+    """Where the panel stays on other axes."""
+    words = []
+    for place in at:
+        axis, _, value = place.partition("=")
+        unit = pretty(str(study.along(axis).attrs.get("units", "")))
+        words.append(f"{_axis(study, axis)} {value} {unit}".strip())
+    return f" At {_and(words)}." if at else ""
 
 
 def _and(words: Sequence[str]) -> str:

@@ -15,11 +15,11 @@ from oceanbox.diagnostics.geometry import Geometry
 from oceanbox.diagnostics.labelled import array_of
 from oceanbox.errors import UnreadableResult
 from oceanbox.figures import fields
-from oceanbox.figures.axes import label_latitude, label_longitude, round_levels
+from oceanbox.figures.axes import label_latitude, label_longitude, round_levels, width_points
 from oceanbox.figures.study_options import CaseMaps
 from oceanbox.figures.study_panels.cases import CaseView, StudyData
-from oceanbox.figures.study_panels.marks import CaseColours, extend_of
-from oceanbox.figures.study_panels.words import drawn, label_of
+from oceanbox.figures.study_panels.marks import case_words, extend_of
+from oceanbox.figures.study_panels.words import drawn, field_label, label_of
 from oceanbox.figures.style import DEEP_IS_DARK, WARM_IS_LIGHT
 
 if TYPE_CHECKING:
@@ -35,6 +35,8 @@ _LEVELS = 20
 _GAP_ACROSS, _GAP_UP = 0.07, 0.16  # between maps, in widths and heights of a map
 _SIGNED = "RdBu_r"
 _DEGREE_STEPS = (5.0, 10.0, 15.0, 20.0, 30.0, 45.0)
+_TITLE_POINTS, _LETTER_POINTS = 6.5, 14.0
+_PER_LETTER = 0.6  # width of a letter, in sizes of the font
 _NUMBERS = 3  # at most so many on an axis of a small map
 
 
@@ -54,9 +56,9 @@ def case_maps(ax: Axes, study: StudyData, options: CaseMaps) -> Axes:
     signed = options.minus_case is not None or _has_two_signs(options.field, values)
     levels = _levels(values, options, signed)
     norm = BoundaryNorm(levels, 256, extend=extend_of(values, levels))
-    words = _words(study, [item.case for item in maps])
+    titles = case_words(study, [item.case for item in maps])
     frames = _frames(ax, len(maps), options.maps_across or len(maps))
-    for inner, item, text in zip(frames, maps, words, strict=True):
+    for inner, item, text in zip(frames, maps, titles, strict=True):
         mesh = inner.pcolormesh(
             item.place.x_face,
             item.place.y_face,
@@ -65,7 +67,7 @@ def case_maps(ax: Axes, study: StudyData, options: CaseMaps) -> Axes:
             norm=norm,
             rasterized=True,
         )
-        inner.set_title(text, loc="right", fontsize=6.5)
+        inner.set_title(_folded(text, ax, options.maps_across or len(maps)), loc="right", fontsize=_TITLE_POINTS)
     _label(frames, maps, options.maps_across or len(maps))
     figure = ax.get_figure(root=False)
     if figure is not None:
@@ -74,9 +76,9 @@ def case_maps(ax: Axes, study: StudyData, options: CaseMaps) -> Axes:
         )
         bar.minorticks_off()
         bar.ax.tick_params(length=2.0)
-        long_name = names.lookup(options.field).long_name
-        difference = f": difference from {options.minus_case}" if options.minus_case is not None else ""
-        bar.set_label(label_of(long_name[:1].upper() + long_name[1:] + difference, unit))
+        words = field_label(options.field)
+        difference = f" minus that of {options.minus_case}" if options.minus_case is not None else ""
+        bar.set_label(label_of(words + difference, unit))
     return ax
 
 
@@ -120,6 +122,12 @@ def _frames(ax: Axes, count: int, across: int) -> list[Axes]:
     return found
 
 
+def _folded(text: str, ax: Axes, across: int) -> str:
+    """On two lines where the words over a map would run into the letter of the panel."""
+    room = width_points(ax) / across - _LETTER_POINTS
+    return text if _PER_LETTER * _TITLE_POINTS * len(text) <= room else text.replace(", ", "\n")
+
+
 def _label(frames: Sequence[Axes], maps: Sequence[_Map], across: int) -> None:
     """Numbers and labels at the left and at the foot only."""
     for index, (inner, item) in enumerate(zip(frames, maps, strict=True)):
@@ -135,17 +143,6 @@ def _label(frames: Sequence[Axes], maps: Sequence[_Map], across: int) -> None:
             inner.set_ylabel("")
 
 
-def _words(study: StudyData, cases: Sequence[CaseView]) -> list[str]:
-    """What each map is: its place on the axis that varies, with the unit, or the name of its case."""
-    legend = CaseColours.legend_of_cases(study, cases)
-    if not legend.title:
-        return [case.name for case in cases]
-    _, _, unit = legend.title.rpartition(" (")
-    by_colour = dict(zip(legend.colours, legend.labels, strict=True))
-    suffix = f" {unit.removesuffix(')')}" if legend.title.endswith(")") else ""
-    return [by_colour[colour] + suffix for colour in CaseColours.of_cases(cases)]
-
-
 def _has_two_signs(field: str, values: Array) -> bool:
     return "temperature" not in field and bool(values.min() < 0.0 < values.max())
 
@@ -153,7 +150,7 @@ def _has_two_signs(field: str, values: Array) -> bool:
 def _levels(values: Array, options: CaseMaps, signed: bool) -> Array:
     if signed and options.lowest is None and options.highest is None:
         # The colour of zero is white: the scale reaches equally far to both sides.
-        size = float(np.abs(values).max())
+        size = float(np.abs(values).max()) or 1.0
         return round_levels(-size, size, _LEVELS)
     low = float(values.min()) if options.lowest is None else options.lowest
     high = float(values.max()) if options.highest is None else options.highest

@@ -6,7 +6,7 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from pathlib import Path
-from typing import Any
+from typing import Any, NamedTuple
 
 import numpy as np
 import xarray as xr
@@ -17,14 +17,14 @@ from oceanbox.diagnostics.theory_inputs import THEORY_INPUTS, theory_inputs
 from oceanbox.errors import UnreadableResult
 from oceanbox.output.files import read_dataset
 
-__all__ = ["CaseView", "Place", "StudyData", "open_study"]
+__all__ = ["CaseView", "Counts", "Place", "StudyData", "open_study"]
 
 Array = NDArray[np.float64]
 Place = float | str
 Dims = tuple[str, ...]
 
 DONE, FAILED = "done", "failed"
-NOT_IN_EQUILIBRIUM = "not in equilibrium"
+NOT_IN_EQUILIBRIUM, COMPLETED = "not in equilibrium", "completed"
 
 
 @dataclass(frozen=True)
@@ -44,6 +44,17 @@ class CaseView:
     def read(self) -> xr.Dataset:
         """Its result, with times as numbers of days. Raises FileNotFoundError or UnreadableResult."""
         return read_dataset(self.result)
+
+
+class Counts(NamedTuple):
+    """Numbers of cases: all, with a result, failed, not in equilibrium, for which none was looked for, between steps."""
+
+    cases: int
+    done: int
+    failed: int
+    unsettled: int
+    not_judged: int
+    probes: int
 
 
 @dataclass(frozen=True)
@@ -76,6 +87,22 @@ class StudyData:
         outcomes = self._variable("outcome")
         begins = [str(text).startswith(NOT_IN_EQUILIBRIUM) for text in outcomes.values.ravel()]
         return outcomes.copy(data=~np.array(begins, dtype=bool).reshape(outcomes.shape))
+
+    def counts(self) -> Counts:
+        """How many cases there are, and what became of them; the top of a branch belongs to both ways and counts once."""
+        done, failed, settled = self.done, self.failed, self.settled
+        once = xr.ones_like(done, dtype=bool)
+        if self.dims == ("direction", "parameter"):
+            once[{"direction": -1, "parameter": -1}] = False
+        judged = self.dataset["ending"] != COMPLETED if "ending" in self.dataset else xr.ones_like(done, dtype=bool)
+        return Counts(
+            cases=int(once.sum()),
+            done=int((done & once).sum()),
+            failed=int((failed & once).sum()),
+            unsettled=int((done & ~settled & once).sum()),
+            not_judged=int((done & ~judged & once).sum()),
+            probes=self.dataset.sizes.get("probe", 0),
+        )
 
     def scalar(self, name: str) -> xr.DataArray:
         """A scalar of all cases, or a number that a law needs, in its unit; NaN where a case has none."""

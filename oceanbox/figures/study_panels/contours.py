@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
 
 from oceanbox.errors import UnreadableResult
-from oceanbox.figures.axes import label_y, round_levels
+from oceanbox.figures.axes import round_levels
 from oceanbox.figures.study_options import DEPTH, ScalarMap
+from oceanbox.figures.study_panels.axes import set_scale
 from oceanbox.figures.study_panels.cases import StudyData
 from oceanbox.figures.study_panels.marks import axis_label, extend_of
 from oceanbox.figures.study_panels.points import is_ordered, positions, scalar_of
@@ -19,6 +21,7 @@ from oceanbox.figures.style import DEEP_IS_DARK, INK, WARM_IS_LIGHT
 if TYPE_CHECKING:
     import xarray as xr
     from matplotlib.axes import Axes
+    from matplotlib.text import Text
 
 __all__ = ["scalar_map"]
 
@@ -26,6 +29,7 @@ Array = NDArray[np.float64]
 
 _LEVELS = 10
 _DOT_POINTS = 2.6
+_CLEAR = 0.06  # of the axes, within which a number would touch their edge
 
 
 def scalar_map(ax: Axes, study: StudyData, options: ScalarMap) -> Axes:
@@ -40,12 +44,13 @@ def scalar_map(ax: Axes, study: StudyData, options: ScalarMap) -> Axes:
     levels = _levels(values, options)
     filled = ax.contourf(x, y, values, levels=levels, cmap=_colours(options.scalar), extend=extend_of(values, levels))
     lines = ax.contour(x, y, values, levels=levels, colors=INK, linewidths=0.4)
-    ax.clabel(lines, levels=list(levels[1::2]), fontsize=6.0, fmt="%g", inline_spacing=2)
+    texts = ax.clabel(lines, levels=list(levels[1::2]), fontsize=6.0, fmt="%g", inline_spacing=2)
     _dots(ax, study, x_axis, y_axis, options)
-    ax.set_xscale("log" if options.x_scale == "logarithmic" else "linear")
-    ax.set_yscale("log" if options.y_scale == "logarithmic" else "linear")
+    set_scale(ax, "x", options.x_scale)
+    set_scale(ax, "y", options.y_scale)
     ax.set_xlabel(axis_label(study.along(x_axis)))
-    label_y(ax, axis_label(study.along(y_axis)))
+    ax.set_ylabel(axis_label(study.along(y_axis)))
+    _drop_clipped(ax, texts)
     figure = ax.get_figure(root=False)
     if figure is not None:
         bar = figure.colorbar(filled, ax=ax, location="right", pad=0.02, aspect=30)
@@ -55,6 +60,14 @@ def scalar_map(ax: Axes, study: StudyData, options: ScalarMap) -> Axes:
         if options.scalar.startswith(DEPTH):
             bar.ax.yaxis.set_inverted(True)
     return ax
+
+
+def _drop_clipped(ax: Axes, texts: Iterable[Text]) -> None:
+    """Take away numbers on contours that the edge of the axes would cut."""
+    for text in list(texts):
+        place = ax.transAxes.inverted().transform(ax.transData.transform(text.get_position()))
+        if not np.all((place > _CLEAR) & (place < 1.0 - _CLEAR)):
+            text.remove()
 
 
 def _over(study: StudyData, array: xr.DataArray, x_axis: str, y_axis: str, options: ScalarMap) -> Array:
@@ -96,14 +109,21 @@ def _dots(ax: Axes, study: StudyData, x_axis: str, y_axis: str, options: ScalarM
     settled, done, failed = (
         _over(study, array, x_axis, y_axis, options).astype(bool) for array in (study.settled, study.done, study.failed)
     )
-    style = {"linestyle": "none", "color": INK, "clip_on": False, "zorder": 4, "markeredgewidth": 0.7}
-    ax.plot(x[done & settled], y[done & settled], marker="o", markersize=_DOT_POINTS, **style)  # type: ignore[arg-type]
-    ax.plot(
-        x[done & ~settled],
-        y[done & ~settled],
-        marker="o",
-        markersize=_DOT_POINTS + 0.8,
-        markerfacecolor="white",
-        **style,  # type: ignore[arg-type]
-    )
-    ax.plot(x[failed], y[failed], marker="x", markersize=_DOT_POINTS + 1.4, **style)  # type: ignore[arg-type]
+    for mask, marker, size, face in (
+        (done & settled, "o", _DOT_POINTS, INK),
+        (done & ~settled, "o", _DOT_POINTS + 0.8, "white"),
+        (failed, "x", _DOT_POINTS + 1.4, INK),
+    ):
+        if mask.any():  # an empty line that is not clipped has no extent, and the layout would collapse
+            ax.plot(
+                x[mask],
+                y[mask],
+                linestyle="none",
+                marker=marker,
+                markersize=size,
+                color=INK,
+                markerfacecolor=face,
+                markeredgewidth=0.7,
+                clip_on=False,
+                zorder=4,
+            )

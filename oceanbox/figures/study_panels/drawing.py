@@ -90,4 +90,5 @@ def compose_study(study: StudyData, page: StudyPage) -> Figure:
                 ax = figure.add_subplot(grid[row, column : column + span])
                 set_letter(draw_study_panel(ax, study, page.panels[index]), page.letter(index))
                 column += span
+        figure.align_ylabels()
     return figure

@@ -23,6 +23,8 @@ __all__ = ["Law", "configured_log_law", "fitted_log_law", "scale_law"]
 
 Balance = Literal["tropics", "basin"]
 
+_SMALLEST = 0.01  # m; closer is as good as exact
+
 _BALANCES = {
     "tropics": ("upwelling_tropics", "supply_tropics"),
     "basin": ("upwelling_basin", "loss_to_abyss"),
@@ -66,7 +68,7 @@ def fitted_log_law(study: StudyData, depth: str, balance: Balance, at: Sequence[
         f"fitted to the {fit.cases} cases in equilibrium: "
         f"H_m = {_number(fit.mixed_layer_depth, fit.mixed_layer_depth_error)} m, "
         f"l = {_number(fit.half_thickness, fit.half_thickness_error)} m (standard errors), "
-        f"root-mean-square misfit {fit.misfit:.2g} m. {_configured_words(study, at)}"
+        f"root-mean-square misfit {_metres(fit.misfit)} m. {_configured_words(study, at)}"
     )
     return Law(_like(up, fit.depth(up, down)), _label("log law, fitted", fit.misfit), _formula(balance), words.strip())
 
@@ -79,7 +81,7 @@ def configured_log_law(study: StudyData, depth: str, balance: Balance, at: Seque
     misfit = misfit_of(_in_equilibrium(study, depth, at), law)
     words = (
         f"with H_m and l as configured and nothing fitted: "
-        f"root-mean-square misfit {misfit:.2g} m over the cases in equilibrium."
+        f"root-mean-square misfit {_metres(misfit)} m over the cases in equilibrium."
     )
     return Law(law, _label("log law, as configured", misfit), _formula(balance), words)
 
@@ -98,7 +100,7 @@ def scale_law(study: StudyData, depth: str, scale: str, at: Sequence[str]) -> La
     )
     words = (
         f"times a factor fitted to the {fit.cases} cases in equilibrium: "
-        f"{_number(fit.factor, fit.factor_error)} (standard error), root-mean-square misfit {fit.misfit:.2g} m."
+        f"{_number(fit.factor, fit.factor_error)} (standard error), root-mean-square misfit {_metres(fit.misfit)} m."
     )
     return Law(values * fit.factor, _label(f"{name} scale × {fit.factor:.2g}", fit.misfit), meaning, words)
 
@@ -130,12 +132,15 @@ def _formula(balance: Balance) -> str:
 
 
 def _label(name: str, misfit: float) -> str:
-    return f"{name} (misfit {misfit:.2g} m)"
+    return f"{name} (misfit {_metres(misfit)} m)"
+
+
+def _metres(misfit: float) -> str:
+    return f"{misfit:.2g}" if misfit >= _SMALLEST else f"< {_SMALLEST:g}"
 
 
 def _number(value: float, error: float) -> str:
-    """A value to the decimals that its error allows: '52.8 ± 0.1'."""
-    if not error > 0.0:
-        return f"{value:.4g}"
-    decimals = max(0, 1 - int(np.floor(np.log10(error))) - (1 if f"{error:.0e}"[0] > "3" else 0))
+    """A value to the decimals that its error allows, three at most: '52.8 ± 0.1'."""
+    size = max(error, _SMALLEST)
+    decimals = max(0, 1 - int(np.floor(np.log10(size))) - (1 if f"{size:.0e}"[0] > "3" else 0))
     return f"{value:.{decimals}f} ± {error:.{decimals}f}"

@@ -11,7 +11,7 @@ from oceanbox import names
 from oceanbox.diagnostics.geometry import Geometry
 from oceanbox.diagnostics.labelled import array_of
 from oceanbox.figures import fields
-from oceanbox.figures.axes import label_latitude, label_longitude, label_y, mark_zero
+from oceanbox.figures.axes import label_latitude, label_longitude, mark_zero
 from oceanbox.figures.study_options import CaseSeries, EquatorialSections, LatitudeLines
 from oceanbox.figures.study_panels.along_axis import label_scalars
 from oceanbox.figures.study_panels.cases import CaseView, StudyData
@@ -52,10 +52,10 @@ def equatorial_sections(ax: Axes, study: StudyData, options: EquatorialSections)
         west, east = min(west, float(faces[0])), max(east, float(faces[-1]))
     label_longitude(ax, west, east)
     if options.field == "thermocline_depth":
-        label_y(ax, "Thermocline depth (m)")
+        ax.set_ylabel("Thermocline depth (m)")
         ax.yaxis.set_inverted(True)
     else:
-        label_y(ax, "Surface temperature (°C)")
+        ax.set_ylabel("Surface temperature (°C)")
     show_colours(ax, CaseColours.legend_of_cases(study, cases), frame=ax)
     return ax
 
@@ -72,7 +72,7 @@ def latitude_lines(ax: Axes, study: StudyData, options: LatitudeLines) -> Axes:
         _line(ax, latitude, array_of(result, options.field) / unit.divisor, case, colour)
         south, north = min(south, float(latitude[0])), max(north, float(latitude[-1]))
     label_latitude(ax, "x", south, north)
-    label_y(ax, label_of(_LATITUDE_WORDS[options.field], unit))
+    ax.set_ylabel(label_of(_LATITUDE_WORDS[options.field], unit))
     show_colours(ax, CaseColours.legend_of_cases(study, cases), frame=ax)
     return ax
 

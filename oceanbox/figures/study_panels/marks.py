@@ -13,18 +13,19 @@ from matplotlib.colors import BoundaryNorm, ListedColormap, to_hex
 from matplotlib.ticker import NullLocator
 from numpy.typing import NDArray
 
-from oceanbox.figures.axes import legend_above
+from oceanbox.figures.study_panels.axes import legend_over
 from oceanbox.figures.study_panels.cases import CaseView, Place, StudyData
-from oceanbox.figures.study_panels.words import drawn, label_of
+from oceanbox.figures.study_panels.words import drawn, label_of, shown_name
 from oceanbox.figures.style import GREY, LINES
 
 if TYPE_CHECKING:
     import xarray as xr
     from matplotlib.axes import Axes
 
-__all__ = ["CaseColours", "axis_label", "extend_of", "sequence", "show_colours", "varying_number"]
+__all__ = ["CaseColours", "axis_label", "case_words", "extend_of", "sequence", "show_colours", "varying_number"]
 
 _TELLABLE = len(LINES)  # lines that a reader can tell apart without an order
+_MOST_PLACES = 2  # on which cases differ; more are not said in a legend
 _TICKS = 8  # numbers beside a colour bar
 _LIGHTEST = 0.86  # of the colour map; lighter lines vanish on white
 
@@ -59,8 +60,8 @@ class CaseColours:
         axis = varying_number(cases)
         if axis is not None:
             return cls.legend_of_axis(study.along(axis), [case.places[axis] for case in cases])
-        named = len(cases) <= _TELLABLE
-        return cls(tuple(cls.of_cases(cases)), tuple(_words(case) if named else "" for case in cases))
+        words = case_words(study, cases) if len(cases) <= _TELLABLE else [""] * len(cases)
+        return cls(tuple(cls.of_cases(cases)), tuple(words))
 
     @staticmethod
     def of_places(places: Sequence[Place]) -> dict[Place, str]:
@@ -125,7 +126,7 @@ def show_colours(ax: Axes, colours: CaseColours, frame: Axes) -> None:
         return
     for colour, label in zip(colours.colours, colours.labels, strict=True):
         ax.plot([], [], color=colour, label=label)
-    legend_above(ax, frame=frame)
+    legend_over(ax, frame=frame)
 
 
 def extend_of(values: NDArray[np.float64], levels: NDArray[np.float64]) -> Literal["neither", "both", "min", "max"]:
@@ -136,7 +137,17 @@ def extend_of(values: NDArray[np.float64], levels: NDArray[np.float64]) -> Liter
     return "max" if above else "neither"
 
 
-def _words(case: CaseView) -> str:
-    """The place of a case where it lies on one axis of names, else its own name."""
-    places = list(case.places.values())
-    return places[0] if len(places) == 1 and isinstance(places[0], str) else case.name
+def case_words(study: StudyData, cases: Sequence[CaseView]) -> list[str]:
+    """What tells each case from the others: its places on the axes that vary, with their units, or its name."""
+    axes = dict.fromkeys(name for case in cases for name in case.places)
+    varying = [name for name in axes if len({case.places.get(name) for case in cases}) > 1]
+    if not varying or len(varying) > _MOST_PLACES:
+        return [shown_name(case.name) for case in cases]
+    return [", ".join(_place_words(study, axis, case.places[axis]) for axis in varying) for case in cases]
+
+
+def _place_words(study: StudyData, axis: str, place: Place) -> str:
+    if isinstance(place, str):
+        return shown_name(place)
+    unit = drawn(axis, study.along(axis).attrs.get("units", ""))
+    return f"{place / unit.divisor:.4g} {unit.unit}".strip().replace("-", "−")

@@ -17,7 +17,17 @@ if TYPE_CHECKING:
     import xarray as xr
     from matplotlib.axes import Axes
 
-__all__ = ["Points", "draw_points", "groups", "is_ordered", "mark_failed", "positions", "scalar_of", "spread_of"]
+__all__ = [
+    "MARK_POINTS",
+    "Points",
+    "draw_points",
+    "groups",
+    "is_ordered",
+    "mark_failed",
+    "positions",
+    "scalar_of",
+    "spread_of",
+]
 
 Array = NDArray[np.float64]
 

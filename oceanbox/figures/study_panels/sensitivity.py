@@ -9,8 +9,8 @@ from matplotlib.ticker import MaxNLocator
 from numpy.typing import NDArray
 
 from oceanbox.errors import UnreadableResult
-from oceanbox.figures.axes import legend_above
 from oceanbox.figures.study_options import SensitivityBars
+from oceanbox.figures.study_panels.axes import legend_over
 from oceanbox.figures.study_panels.cases import StudyData
 from oceanbox.figures.study_panels.words import key_words
 from oceanbox.figures.style import GREY, INK, LINES
@@ -61,7 +61,7 @@ def _draw_indices(ax: Axes, study: StudyData, options: SensitivityBars) -> None:
         _bars(ax, places + shift * _HEIGHT, value, (value - low, high - value), colour, label)
     _label_keys(ax, study, options, order)
     ax.set_xlabel("Share of the variance (Sobol' index)")
-    legend_above(ax, frame=ax)
+    legend_over(ax, frame=ax)
 
 
 def _draw_elasticities(ax: Axes, study: StudyData, options: SensitivityBars) -> None:

@@ -14,7 +14,7 @@ from oceanbox.errors import UnreadableResult
 from oceanbox.figures.study_options import DEPTH, Switches
 from oceanbox.figures.study_panels.along_axis import label_scalars
 from oceanbox.figures.study_panels.cases import StudyData
-from oceanbox.figures.study_panels.words import unit_of
+from oceanbox.figures.study_panels.words import shown_name, unit_of
 from oceanbox.figures.style import GREY, INK, LINES
 
 if TYPE_CHECKING:
@@ -71,7 +71,7 @@ def switches(ax: Axes, study: StudyData, options: Switches) -> Axes:
             color=line.color,
         )
         _draw_fit(inner, record, longest, per_unit, divisor)
-        inner.set_title(name.replace("_", " "), loc="right", fontsize=6.5)
+        inner.set_title(_title(name, record), loc="right", fontsize=6.5)
         inner.set_xlim(0.0, longest / per_unit)
         inner.xaxis.set_major_locator(MaxNLocator(nbins=4, steps=[1, 2, 5, 10]))
         inner.set_xlabel(f"Time ({'years' if per_unit > 1.0 else 'days'})")
@@ -126,9 +126,20 @@ def record_of(study: StudyData, switch: str, scalar: str) -> Record:
     )
 
 
-def time_words(days: float) -> str:
-    """A time in days, or in years where that is shorter to say."""
-    return f"{days / DAYS_PER_YEAR:.3g} years" if days > DAYS_PER_YEAR else f"{days:.3g} days"
+def time_words(days: float, error: float) -> str:
+    """A time with its standard error, in days, or in years where it is longer than one, to the decimals of the error."""
+    per_unit, unit = (DAYS_PER_YEAR, "years") if days > DAYS_PER_YEAR else (1.0, "days")
+    size = error / per_unit
+    decimals = max(0, -int(np.floor(np.log10(size)))) if size > 0.0 else 1
+    return f"{days / per_unit:.{decimals}f} ± {size:.{decimals}f} {unit}"
+
+
+def _title(name: str, record: Record) -> str:
+    """The switch, and its e-folding time where one was found."""
+    words = shown_name(name)
+    if record.trust != SOUND:
+        return words
+    return f"{words}: {time_words(record.e_folding, record.e_folding_error)}"
 
 
 def _draw_fit(ax: Axes, record: Record, longest: float, per_unit: float, divisor: float) -> None:

@@ -9,7 +9,18 @@ from typing import Final, NamedTuple
 from oceanbox import names
 from oceanbox.diagnostics.theory_inputs import THEORY_INPUTS
 
-__all__ = ["LABELS", "Drawn", "drawn", "key_words", "label_of", "pretty", "short_label", "unit_of"]
+__all__ = [
+    "LABELS",
+    "Drawn",
+    "drawn",
+    "field_label",
+    "key_words",
+    "label_of",
+    "pretty",
+    "short_label",
+    "shown_name",
+    "unit_of",
+]
 
 
 class Drawn(NamedTuple):
@@ -40,6 +51,8 @@ _BY_NAME: Final = MappingProxyType(
         "kinetic_energy": Drawn(1e18, "10¹⁸ J"),
     }
 )
+# Rates at which a layer gains volume or salt are micrometres per second and the like.
+_EXCHANGES: Final = frozenset((*names.in_group("volume_budget"), *names.in_group("salt_budget")))
 _SUPERSCRIPTS: Final = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 
 LABELS: Final = MappingProxyType(
@@ -89,6 +102,15 @@ LABELS: Final = MappingProxyType(
 )
 """Short names of scalars and of what laws need; the long ones go into captions."""
 
+_FIELDS: Final = MappingProxyType(
+    {
+        "thermocline_depth": "thermocline depth",
+        "temperature": "surface temperature",
+        "salinity": "surface salinity",
+        "surface_heat_flux": "surface heat flux",
+    }
+)
+
 # Parts of keys that name a unit: what follows the quantity.
 _UNIT_PARTS: Final = "per m m2 m3 s kg g K K2 W N J Pa PW degC deg degree degrees day days year years h km mm"
 # Last parts of keys that say nothing without the part before.
@@ -102,6 +124,8 @@ def drawn(name: str, units: str) -> Drawn:
     units  in the file, UDUNITS
     """
     bare = name.removeprefix(names.SERIES_PREFIX).removesuffix(names.STD_SUFFIX)
+    if units in ("m s-1", "kg m-2 s-1") and bare in _EXCHANGES:
+        return Drawn(1e-6, f"10⁻⁶ {pretty(units)}")
     return _BY_NAME.get(bare) or _LARGE.get(units) or Drawn(1.0, pretty(units))
 
 
@@ -128,9 +152,20 @@ def short_label(name: str) -> str:
     )
 
 
+def field_label(name: str) -> str:
+    """A map in a few words, without its unit."""
+    words = _FIELDS.get(name, names.lookup(name).long_name)
+    return words[:1].upper() + words[1:]
+
+
 def label_of(words: str, unit: Drawn) -> str:
     """Words and unit as they stand on an axis."""
     return f"{words} ({unit.unit})" if unit.unit else words
+
+
+def shown_name(name: str) -> str:
+    """The name of a case or of a place on an axis as it is printed."""
+    return name if "=" in name else name.replace("_", " ")
 
 
 def key_words(key: str) -> str:

@@ -1,0 +1,76 @@
+"""Axes of panels of a study: scales with few round numbers, and legends that keep clear of the letter."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import TYPE_CHECKING, Literal
+
+from matplotlib import rcParams
+from matplotlib.ticker import FuncFormatter, LogLocator, MaxNLocator, NullFormatter
+
+from oceanbox.figures.axes import width_points
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+
+__all__ = ["legend_over", "set_names", "set_scale"]
+
+_STEPS = (1, 2, 5, 10)
+_NUMBERS = 9  # at most so many steps between numbers on an axis
+_LETTER_POINTS = 14.0
+_PER_LETTER = 0.6  # width of a letter, in sizes of the font
+_SURE = 0.8  # of the estimated width of a panel, which colour bars in other rows make narrower
+
+
+def set_scale(ax: Axes, axis: Literal["x", "y"], scale: Literal["linear", "logarithmic"]) -> None:
+    """Make an axis linear or logarithmic, with numbers written out and few enough not to touch."""
+    target = getattr(ax, f"{axis}axis")
+    if scale == "linear":
+        steps = _NUMBERS if axis == "y" else _steps_that_fit(ax)
+        target.set_major_locator(MaxNLocator(nbins=steps, steps=_STEPS))
+        return
+    getattr(ax, f"set_{axis}scale")("log")
+    target.set_major_locator(LogLocator(subs=(1.0, 2.0, 5.0)))
+    target.set_major_formatter(FuncFormatter(lambda value, _: f"{value:g}"))
+    target.set_minor_formatter(NullFormatter())
+
+
+def set_names(ax: Axes, names: Sequence[str]) -> None:
+    """Names along the panel at 0, 1, 2 and so on, slanted where they would touch."""
+    points = (max(map(len, names)) + 1) * _PER_LETTER * float(rcParams["font.size"])
+    slanted = len(names) * points > _SURE * width_points(ax)
+    ax.set_xticks(range(len(names)), names)
+    ax.set_xlim(-0.5, len(names) - 0.5)
+    if slanted:
+        ax.tick_params(axis="x", labelrotation=40.0)
+        for text in ax.get_xticklabels():
+            text.set_horizontalalignment("right")
+            text.set_rotation_mode("anchor")
+
+
+def _steps_that_fit(ax: Axes) -> int:
+    """The most steps along the panel for which numbers keep apart."""
+    low, high = sorted(ax.get_xlim())
+    for steps in range(_NUMBERS, 2, -1):
+        numbers = [
+            value for value in MaxNLocator(nbins=steps, steps=_STEPS).tick_values(low, high) if low <= value <= high
+        ]
+        widest = max((len(f"{value:.6g}") for value in numbers), default=1)
+        if len(numbers) * (widest + 1) * _PER_LETTER * float(rcParams["font.size"]) <= _SURE * width_points(ax):
+            return steps
+    return 2
+
+
+def legend_over(ax: Axes, frame: Axes) -> None:
+    """The legend over the right end of the axes, in as many columns as are sure to leave room for the letter.
+
+    frame  the axes of the whole panel
+    """
+    _, labels = ax.get_legend_handles_labels()
+    if not labels:
+        return
+    size = float(rcParams["legend.fontsize"])
+    handle = rcParams["legend.handlelength"] + rcParams["legend.handletextpad"] + rcParams["legend.columnspacing"]
+    entry = size * (handle + _PER_LETTER * max(len(label) for label in labels))
+    columns = max(1, min(len(labels), int((_SURE * width_points(frame) - _LETTER_POINTS) / entry)))
+    ax.legend(loc="lower right", bbox_to_anchor=(1.0, 1.0), borderaxespad=0.4, ncol=columns)
