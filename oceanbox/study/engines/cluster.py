@@ -70,7 +70,7 @@ class ClusterEngine:
     @property
     def slots(self) -> int:
         """The workers there are now; while there are none, one task is handed to the scheduler to wait."""
-        return max(1, len(self._client.scheduler_info(n_workers=-1)["workers"]))
+        return max(1, len(self._client.nthreads()))
 
     def warm(self, task: Task) -> None:
         """Nothing: each machine compiles for itself and keeps what it compiled."""
@@ -119,7 +119,7 @@ class ClusterEngine:
     def await_workers(self, count: int, seconds: float) -> None:
         """Wait until so many workers are there, for tests and scripts; raises TimeoutError."""
         end = time.monotonic() + seconds
-        while len(self._client.scheduler_info(n_workers=-1)["workers"]) < count:
+        while len(self._client.nthreads()) < count:
             if time.monotonic() > end:
                 raise TimeoutError(f"fewer than {count} workers after {seconds:g} s")
             time.sleep(0.1)
