@@ -91,7 +91,11 @@ class _Keeper:
             )
 
     def resume_snapshots(self, records: int) -> None:
-        if records > 0 and part_of(self._store.snapshots).exists():
+        part = part_of(self._store.snapshots)
+        if records > 0 and not part.exists() and self._store.snapshots.exists():
+            # Killed after the snapshots were whole and before the result was.
+            self._store.snapshots.replace(part)
+        if records > 0 and part.exists():
             self._snapshots = Snapshots.resume(self._store.snapshots, records)
 
     def snapshot(self, run: Run, number: int) -> None:

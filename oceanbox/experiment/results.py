@@ -108,5 +108,13 @@ def result_dataset(run: Run, outcome: Outcome, provenance: Mapping[str, str]) ->
         attributes=provenance,
     )
     dataset = summarise(dataset)
+    sizes = {str(name): size for name, size in dataset.sizes.items()}
+    dataset = dataset.assign(
+        {
+            name: data_variable(lookup(str(name)), dataset[name].values, sizes)
+            for name in dataset.data_vars
+            if "coordinates" not in dataset[name].encoding
+        }
+    )
     spread = {name: recorder.scalars.deviation(name) for name in recorder.scalars.mean}
     return _with_spread(dataset, spread)

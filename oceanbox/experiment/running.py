@@ -8,7 +8,7 @@ import json
 import math
 import time
 from collections.abc import Callable
-from dataclasses import asdict, dataclass
+from dataclasses import asdict, dataclass, replace
 from typing import Any, Protocol
 
 import numpy as np
@@ -285,7 +285,7 @@ class Run:
                 break
         broken = Model(self.model.setup)
         broken.restore(self.model.arrays())
-        broken.clock, broken.total_steps = self.model.clock, self.model.total_steps
+        broken.clock, broken.total_steps = replace(self.model.clock), self.model.total_steps
         days = self.model.clock.days
         self._rewind()
         error = describe_breakdown(broken, self.model)

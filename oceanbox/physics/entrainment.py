@@ -55,11 +55,13 @@ def upwelling_gain(h: float, upwelling: float, dt: float, constants: Constants) 
     """
     if upwelling <= 0.0:
         return 0.0
-    depth_below = h - constants.mixed_depth
-    if depth_below <= 0.0:
-        return upwelling * dt
     length = constants.half_thickness
-    return length * math.log1p(math.exp(-depth_below / length) * upwelling * dt / length)
+    up = upwelling * dt
+    inside = max(constants.mixed_depth - h, 0.0)
+    if up <= inside:
+        return up
+    share = math.exp(-max(h - constants.mixed_depth, 0.0) / length)
+    return inside + length * math.log1p(share * (up - inside) / length)
 
 
 @kernel

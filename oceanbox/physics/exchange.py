@@ -79,6 +79,8 @@ def exchange(
     """
     rows, columns = h.shape
     if constants.mixed_depth > 0.0:
+        # Water has moved since the edges were filled, and a channel's seam needs both its neighbours.
+        fill_centre_edges(h, constants.periodic_x)
         mixed_layer_transport(h, u, v, forcing.shear_x, forcing.shear_y, wind, constants, Mx, My)
     entrain(h, Mx, My, forcing, constants, dt, ledger, gain)
     handing_over = dt / (constants.outcrop_time + dt)
@@ -139,7 +141,11 @@ def exchange(
 
 @kernel
 def dilute_momentum(u: Array, v: Array, hx: Array, hy: Array, gain: Array, constants: Constants) -> None:
-    """u /= 1 + <w_e dt>/h on faces: entrained water comes in at rest.  ``gain`` is w_e dt at centres; its edges are filled."""
+    """u /= 1 + <w_e dt>/h on faces, h after the exchange: entrained water comes in at rest.
+
+    h u is kept to (w_e dt/h)^2; the implicit form cannot turn a current round, however much is entrained.  ``gain`` is w_e dt
+    at centres; its edges are filled.
+    """
     if constants.linear_depth > 0.0:
         return
     fill_centre_edges(gain, constants.periodic_x)

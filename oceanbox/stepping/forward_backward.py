@@ -179,12 +179,13 @@ def advance_forward_backward(
 ) -> None:
     """Take ``steps`` steps of ``dt`` seconds in place.
 
-    ``steps_done`` counts all steps since the memory was made (it selects the ring slot and the steps that end with an
-    exchange), ``history`` the steps of this ``dt`` behind us (it selects the starting weights), ``start_time`` [s] is the
-    model time of the state.
+    ``steps_done`` counts all steps since the memory was made (it selects the ring slot), ``history`` the steps of this ``dt``
+    behind us (it selects the starting weights), ``start_time`` [s] is the model time of the state.  Columns exchange after
+    every ``exchange_every`` steps and after the last one, over the time since they last did: no time is owed at the end.
     """
     h, heat, salt, u, v = state
     fill_layer_edges(state, work, constants)
+    owed = 0
     for n in range(steps):
         now = (steps_done + n) % 3
         before = (steps_done + n + 2) % 3
@@ -200,10 +201,11 @@ def advance_forward_backward(
                     hx, u[k], v[k], tx[now, k], ty[now, k], constants, work.vorticity, work.kinetic,
                     memory.advection_x[now, k], memory.advection_y[now, k],
                 )  # fmt: skip
-        exchanging = (steps_done + n + 1) % exchange_every == 0
+        owed += 1
+        exchanging = owed == exchange_every or n == steps - 1
         if exchanging:
             exchange(
-                h[0], heat[0], salt[0], u[0], v[0], forcing, constants, wind, exchange_every * dt, ledger,
+                h[0], heat[0], salt[0], u[0], v[0], forcing, constants, wind, owed * dt, ledger,
                 work.mixed_x, work.mixed_y, work.gain[0],
             )  # fmt: skip
         fill_layer_edges(state, work, constants)
@@ -211,3 +213,4 @@ def advance_forward_backward(
         push_velocity(state, memory, forcing, constants, work, now, before, earlier, history + n, wind, dt)
         if exchanging:
             dilute_momentum(u[0], v[0], work.thickness_x[0], work.thickness_y[0], work.gain[0], constants)
+            owed = 0

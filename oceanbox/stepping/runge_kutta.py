@@ -216,6 +216,7 @@ def advance_runge_kutta(
             state.thickness[0], state.heat[0], state.salt[0], state.velocity_x[0], state.velocity_y[0],
             forcing, constants, wind, dt, ledger, work.mixed_x, work.mixed_y, work.gain[0],
         )  # fmt: skip
+        fill_centre_edges(state.thickness[0], constants.periodic_x)
         mean_thickness(state.thickness[0], constants, work.thickness_x[0], work.thickness_y[0])
         dilute_momentum(
             state.velocity_x[0], state.velocity_y[0], work.thickness_x[0], work.thickness_y[0], work.gain[0], constants

@@ -105,3 +105,12 @@ def test_the_folder_of_an_interrupted_run_of_another_configuration_is_refused(tm
         evolve(short({"surface.wind.ramp_days": 1.0}), tmp_path, report=never)
     assert contents(tmp_path) == before
     assert not evolve(short(), tmp_path).found
+
+
+def test_a_run_from_a_salty_state_carries_its_salt(tmp_path: Path) -> None:
+    """Also where the configuration itself makes no salt: a salinity that was brought along is moved by the water."""
+    salty = {"surface.fresh_water": None, "layers.0.initial_salinity_g_per_kg": 36.0}
+    evolve(short(salty), tmp_path / "salty")
+    fresh = evolve(short({"surface.fresh_water": None}), tmp_path / "fresh", start=tmp_path / "salty" / "state.nc")
+    assert float(abs(fresh.result["salt_advection"]).max()) > 0.0
+    assert float(abs(fresh.result["salinity"] - 36.0).max()) < 0.5

@@ -28,9 +28,9 @@ def result(folder: Path) -> xr.Dataset:
     return read_dataset(folder / "result.nc")
 
 
-def test_snapshots_pass_the_strict_check_of_the_cf_conventions(folder: Path) -> None:
+def test_result_and_snapshots_pass_the_strict_check_of_the_cf_conventions(folder: Path) -> None:
     """CF 1.11 with every finding counted, also those that are mere advice."""
-    assert findings_of_strict_cf_check(folder / "snapshots.nc") == ""
+    assert findings_of_strict_cf_check(folder / "result.nc", folder / "snapshots.nc") == ""
 
 
 @pytest.mark.parametrize("budget", sorted(BUDGETS))

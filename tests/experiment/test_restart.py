@@ -111,6 +111,28 @@ def test_a_run_killed_again_and_again_goes_on_to_the_same_result(
     assert_same_run(tmp_path, uninterrupted)
 
 
+KILLED_BEFORE_THE_RESULT = """
+import os, signal, sys
+from oceanbox.experiment import api
+from oceanbox.cli import main
+api.CHECKPOINT_SECONDS = 0.1
+api.write_dataset = lambda *_: os.kill(os.getpid(), signal.SIGKILL)
+sys.exit(main(sys.argv[1:]))
+"""
+
+
+def test_a_run_killed_between_its_snapshots_and_its_result_keeps_every_snapshot(
+    config: Path, uninterrupted: Path, tmp_path: Path
+) -> None:
+    """The snapshots are whole before the result is; a kill in between must not lose them."""
+    killed = oceanbox("evolve", config, "--into", tmp_path, via=("-c", KILLED_BEFORE_THE_RESULT))
+    assert killed.returncode == -signal.SIGKILL
+    assert (tmp_path / "snapshots.nc").exists() and not (tmp_path / "result.nc").exists()
+    again = oceanbox("evolve", config, "--into", tmp_path)
+    assert again.returncode == 0, again.stderr
+    assert_same_run(tmp_path, uninterrupted)
+
+
 def stop_at_once(progress: Progress) -> None:
     """A reporter that asks the run to stop whenever it is told where the run is."""
     signal.raise_signal(signal.SIGTERM)
