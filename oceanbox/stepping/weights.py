@@ -16,11 +16,15 @@ EPSILON = 0.013
 
 @kernel
 def transport_weights(steps_done: int) -> tuple[float, float, float]:
-    """Weights of U at steps n, n-1, n-2 in the thickness equation."""
+    """Weights of U at steps n, n-1, n-2 in the thickness equation.
+
+    At the start the missing transports are the first one, so that every later one counts once in all: rotation takes each
+    velocity once, and only so does a step conserve linear potential vorticity.
+    """
     if steps_done == 0:
         return 1.0, 0.0, 0.0
     if steps_done == 1:
-        return 1.5, -0.5, 0.0
+        return 1.5 + BETA, -(0.5 + BETA), 0.0
     return 1.5 + BETA, -(0.5 + 2.0 * BETA), BETA
 
 
@@ -31,6 +35,8 @@ def pressure_weights(steps_done: int) -> tuple[float, float, float, float]:
         return 1.0, 0.0, 0.0, 0.0
     if steps_done == 1:
         return 0.5, 0.5, 0.0, 0.0
+    if steps_done == 2:  # the force at the very start is not known
+        return 0.5 + GAMMA + 2.0 * EPSILON, 0.5 - 2.0 * GAMMA - 3.0 * EPSILON, GAMMA + EPSILON, 0.0
     return 0.5 + GAMMA + 2.0 * EPSILON, 0.5 - 2.0 * GAMMA - 3.0 * EPSILON, GAMMA, EPSILON
 
 

@@ -40,7 +40,7 @@ def roundoff(model: Model) -> float:
     return EPS * 200.0 * np.sqrt(model.clock.steps)
 
 
-@pytest.mark.parametrize("scheme", ["runge_kutta_3"])
+@pytest.mark.parametrize("scheme", ["forward_backward", "runge_kutta_3"])
 @pytest.mark.parametrize("advection", [True, False], ids=["advected", "not advected"])
 def test_a_tilted_layer_at_rest_stays_at_rest(scheme: str, advection: bool) -> None:
     """A year without change; a thickness off by round-off moves as waves with velocities c/h times as large, c/h < 0.02 s-1."""
