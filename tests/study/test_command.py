@@ -4,13 +4,13 @@ from __future__ import annotations
 
 import subprocess
 import sys
+from contextlib import nullcontext
 from pathlib import Path
 
 import pytest
 import xarray as xr
 
 from oceanbox.cli import main
-from oceanbox.study.engines.local import LocalEngine
 from oceanbox.study.executing import StudyProgress
 from oceanbox.study.run import OverAll, dry_run, run_study
 from tests.study.oceans import TARGETS, HereEngine, write_study
@@ -23,9 +23,7 @@ SOUND = {"name": "sound", "changes": {}}
 def here(monkeypatch: pytest.MonkeyPatch) -> HereEngine:
     """Runs the cases of a study in this process instead of in workers."""
     engine = HereEngine(2)
-    monkeypatch.setattr(LocalEngine, "__new__", lambda cls, workers=None: engine)
-    monkeypatch.setattr(HereEngine, "__enter__", lambda self: self, raising=False)
-    monkeypatch.setattr(HereEngine, "__exit__", lambda self, *_: None, raising=False)
+    monkeypatch.setattr("oceanbox.study.run._engine", lambda *_: nullcontext(engine))
     return engine
 
 

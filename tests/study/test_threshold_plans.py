@@ -211,9 +211,8 @@ def test_elasticities_come_from_four_runs_around_the_base(tmp_path: Path) -> Non
     ],
 )
 def test_keys_without_a_logarithm_are_refused(key: str, message: str, tmp_path: Path) -> None:
-    loaded = study_of(tmp_path, {"sensitivity": {"kind": "elasticities", "keys": [key]}})
     with pytest.raises(ConfigError, match=message):
-        planned_cases(loaded.study, loaded.base)
+        study_of(tmp_path, {"sensitivity": {"kind": "elasticities", "keys": [key]}})
 
 
 def test_sobol_indices_are_those_of_the_cases_planned(tmp_path: Path) -> None:
@@ -242,9 +241,8 @@ def test_sobol_indices_are_those_of_the_cases_planned(tmp_path: Path) -> None:
 
 def test_faults_of_a_threshold_study_are_found_before_anything_runs(tmp_path: Path) -> None:
     far = {"branch": {"key": "water.gravity_m_per_s2", "lowest": -1.0, "highest": 9.0}}
-    loaded = study_of(tmp_path, far)
     with pytest.raises(ConfigError, match="gravity_m_per_s2"):
-        planned_cases(loaded.study, loaded.base)
+        study_of(tmp_path, far)
     with pytest.raises(ConfigError, match="did you mean thermocline_depth_basin_mean"):
         study_of(tmp_path, {"branch": {**BRANCH["branch"], "measure": "thermocline_depth_basin_meen"}})
     with pytest.raises(ConfigError, match="recorded as a series"):
