@@ -50,7 +50,7 @@ JUMP_UP, JUMP_DOWN = 1.237, 0.413
 E_FOLDING = {"wind_slack": 130.0, "loss_off": 4200.0}
 VISCOSITY, DAMPING = "motion.viscosity_m2_per_s", "entrainment.upwelling.shear_damping_per_day"
 THICKNESS = "entrainment.upwelling.thermocline_half_thickness_m"
-POWERS = {THICKNESS: 0.6, DAMPING: -0.25, VISCOSITY: 0.1}
+POWERS = {DAMPING: -0.25, VISCOSITY: 0.1, THICKNESS: 0.6}  # in no order of size
 
 
 def synthetic_case(target: float, wind: float, settled: bool = True) -> xr.Dataset:
@@ -155,7 +155,7 @@ def sensitivity_study(kind: str) -> xr.Dataset:
     if kind == "elasticities":
         spec |= {"keys": keys}
     else:
-        ranges = zip(keys, (20.0, 0.3, 5.0e4), (45.0, 0.9, 1.0e5), strict=True)
+        ranges = zip(keys, (0.3, 5.0e4, 20.0), (0.9, 1.0e5, 45.0), strict=True)
         spec |= {"base_samples": 256, "resamples": 200}
         spec |= {"ranges": [{"key": key, "lowest": low, "highest": high} for key, low, high in ranges]}
     study, base = _study({"sensitivity": spec})

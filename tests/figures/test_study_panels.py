@@ -19,6 +19,7 @@ from oceanbox.figures import fields
 from oceanbox.figures.study_panels.cases import StudyData, open_study
 from oceanbox.figures.study_panels.drawing import draw_study_panel
 from oceanbox.figures.study_panels.laws import fitted_log_law
+from oceanbox.figures.study_panels.marks import extend_of
 from tests.figures.test_study_page import page_of
 from tests.synthetic_study import HALF_THICKNESS, JUMP_DOWN, JUMP_UP, MEASURE, MIXED_LAYER, POWERS, TARGETS
 
@@ -202,6 +203,14 @@ def test_maps_share_one_scale_that_covers_all(one_axis: StudyData) -> None:
     assert [inner.get_title(loc="right") for inner in ax.child_axes] == ["2 °C", "6 °C", "10 °C"]
 
 
+def test_a_scale_is_open_at_the_ends_that_numbers_lie_beyond() -> None:
+    levels = np.array([0.0, 1.0, 2.0])
+    found = [
+        extend_of(np.array(values), levels) for values in ([0.0, 2.0], [-1.0, 1.0], [1.0, np.nan, 3.0], [-1.0, 3.0])
+    ]
+    assert found == ["neither", "min", "max", "both"]
+
+
 def test_differences_are_from_the_named_case_with_white_at_zero(one_axis: StudyData) -> None:
     ax = drawn(one_axis, "case_maps", minus_case="target=2")
     meshes = [item for inner in ax.child_axes for item in inner.collections if isinstance(item, QuadMesh)]
@@ -316,7 +325,7 @@ def test_elasticities_are_the_powers_that_made_the_depth(elasticities: StudyData
     )
     (bars,) = (item for item in ax.containers if isinstance(item, BarContainer))
     np.testing.assert_allclose([bar.get_width() for bar in bars], list(POWERS.values()), rtol=1e-9)
-    assert ax.get_yticklabels()[2].get_text() == "A"
+    assert ax.get_yticklabels()[1].get_text() == "A"
 
 
 @pytest.mark.parametrize(

@@ -10,15 +10,20 @@ from typing import Any
 import numpy as np
 import pytest
 from matplotlib import rc_context
+from matplotlib.figure import Figure
+from matplotlib.text import Text
+from matplotlib.transforms import Bbox
 
 from oceanbox.figures.study_page import StudyPage, draw_study
+from oceanbox.figures.study_panels.axes import set_names
 from oceanbox.figures.study_panels.caption import study_caption, study_name
 from oceanbox.figures.study_panels.cases import StudyData
-from oceanbox.figures.study_panels.drawing import compose_study
+from oceanbox.figures.study_panels.drawing import compose_study, draw_study_panel
 from oceanbox.figures.style import RC
 from tests.figures.test_saving import text_boxes
 from tests.figures.test_study_page import page_of
 
+LETTER_POINTS = 8.0  # size of the letter of a panel, which is at least as wide as it is drawn
 SMALL = {"name": "small", "width": "single", "columns": 1}
 ALONG = {"kind": "scalar_along_axis"}
 SECTIONS = {"kind": "equatorial_sections"}
@@ -26,6 +31,10 @@ MAPS = {"kind": "case_maps", "span_columns": 2}
 BARS = {"kind": "budget_bars", "regions": ["tropics", "northern_high_latitudes"]}
 LAW = {"kind": "scalar_along_axis", "axis": "target", "theory": "log_law"}
 RATIO = {"kind": "scalar_against_scalar", "x": "upwelling_ratio_tropics", "x_scale": "logarithmic", "theory": "log_law"}
+
+TURNED = {"kind": "scalar_map", "x_axis": "wind", "y_axis": "target"}
+NAMED = {"kind": "equatorial_sections", "cases": ["target=2 wind=-0.03", "target=6 wind=-0.06"]}
+HEAT = {"kind": "scalar_along_axis", "scalars": ["tropical_heat_gain", "applied_high_latitude_loss", "total_heat_loss"]}
 
 
 def caption_of(study: StudyData, *panels: dict[str, Any]) -> str:
@@ -125,8 +134,11 @@ def test_a_study_without_a_name_is_called_study(one_axis: StudyData) -> None:
 
 def pages() -> dict[str, StudyPage]:
     return {
-        "one_axis": page_of(ALONG, SECTIONS, MAPS, BARS, {"kind": "case_series"}, columns=2),
-        "two_axes": page_of(LAW, RATIO, {"kind": "scalar_map"}, {"kind": "case_maps", "maps_across": 3}, columns=2),
+        "one_axis": page_of(ALONG, SECTIONS, MAPS, BARS, {"kind": "case_series"}, HEAT, columns=2),
+        "two_axes": page_of(
+            LAW, RATIO, {"kind": "scalar_map"}, {"kind": "case_maps", "maps_across": 3}, TURNED, NAMED, columns=2
+        ),
+        "narrow": page_of(LAW | {"at": ["wind=-0.03"]}, RATIO | {"parameters": "both"}, columns=3),
         "branch": page_of({"kind": "branches"}, **SMALL),
         "switch": page_of({"kind": "switches"}, columns=1),
         "indices": page_of({"kind": "sensitivity_bars"}, **SMALL),
@@ -134,10 +146,17 @@ def pages() -> dict[str, StudyPage]:
     }
 
 
+def assert_apart(boxes: list[tuple[str, Bbox]]) -> None:
+    for (one, first), (other, second) in itertools.combinations(boxes, 2):
+        overlap_x = min(first.x1, second.x1) - max(first.x0, second.x0)
+        overlap_y = min(first.y1, second.y1) - max(first.y0, second.y0)
+        assert overlap_x <= 0 or overlap_y <= 0, (one, other)
+
+
 @pytest.mark.filterwarnings("error")  # the layout says so when it fails
 @pytest.mark.parametrize("name", list(pages()))
 def test_no_two_texts_touch_and_none_leaves_the_page(name: str, request: pytest.FixtureRequest) -> None:
-    study: StudyData = request.getfixturevalue(name)
+    study: StudyData = request.getfixturevalue("two_axes" if name == "narrow" else name)
     with rc_context(dict(RC)):
         figure = compose_study(study, pages()[name])
         figure.draw_without_rendering()
@@ -147,7 +166,60 @@ def test_no_two_texts_touch_and_none_leaves_the_page(name: str, request: pytest.
     for text, box in boxes:
         assert box.x0 >= 0 and box.y0 >= 0, text
         assert np.all(box.max <= size), text
-    for (one, first), (other, second) in itertools.combinations(boxes, 2):
-        overlap_x = min(first.x1, second.x1) - max(first.x0, second.x0)
-        overlap_y = min(first.y1, second.y1) - max(first.y0, second.y0)
-        assert overlap_x <= 0 or overlap_y <= 0, (one, other)
+    assert_apart(boxes)
+    for ax in figure.axes:
+        legend = ax.get_legend()
+        assert (
+            legend is None
+            or legend.get_window_extent().x0 > ax.get_window_extent().x0 + LETTER_POINTS / 72.0 * figure.dpi
+        )
+
+
+@pytest.mark.parametrize(("across", "at"), [(1, ["wind=-0.03"]), (2, []), (3, []), (4, [])])
+def test_titles_of_maps_keep_off_the_maps_and_their_numbers(two_axes: StudyData, across: int, at: list[str]) -> None:
+    page = page_of({"kind": "case_maps", "maps_across": across, "at": at}, columns=2, height_mm=90.0)
+    with rc_context(dict(RC)):
+        figure = compose_study(two_axes, page)
+        figure.draw_without_rendering()
+        frames = [inner for ax in figure.axes for inner in ax.child_axes]
+        titles = [text for inner in frames for text in inner.findobj(Text) if "°C" in text.get_text()]
+        boxes = [text.get_window_extent() for text in titles]
+        texts = text_boxes(figure)
+    assert len(boxes) == len(frames) == (3 if at else 5)
+    for inner, box in itertools.product(frames, boxes):
+        beside = box.x1 <= inner.bbox.x0 or inner.bbox.x1 <= box.x0
+        assert beside or box.y0 >= inner.bbox.y1 or box.y1 <= inner.bbox.y0
+    assert_apart(texts)
+
+
+@pytest.mark.parametrize(("names", "slant"), [(["calm", "cold", "dry"], 0.0), (["a very long name indeed"] * 9, 40.0)])
+def test_names_along_an_axis_are_slanted_where_they_would_touch(names: list[str], slant: float) -> None:
+    """Slanted names touch where the distance across them, of their anchors, is less than the height of a line."""
+    with rc_context(dict(RC)):
+        figure = Figure(figsize=(3.5, 2.5), layout="constrained")
+        ax = figure.add_subplot()
+        set_names(ax, names)
+        figure.draw_without_rendering()
+        texts = ax.get_xticklabels()
+        boxes = [(text.get_text(), text.get_window_extent()) for text in texts]
+    assert {text.get_rotation() for text in texts} == {slant}
+    if not slant:
+        assert_apart(boxes)
+    anchors = ax.transData.transform([(0.0, 0.0), (1.0, 0.0)])
+    across = (anchors[1, 0] - anchors[0, 0]) * np.sin(np.radians(slant or 90.0))
+    assert across > 7.0 / 72.0 * figure.dpi
+
+
+@pytest.mark.parametrize("width", [1.8, 2.5, 3.5, 7.0])
+def test_numbers_on_an_axis_keep_a_letter_apart(two_axes: StudyData, width: float) -> None:
+    with rc_context(dict(RC)):
+        figure = Figure(figsize=(width, 2.0), layout="constrained")
+        ax = draw_study_panel(figure.add_subplot(), two_axes, page_of(TURNED).panels[0])
+        figure.draw_without_rendering()
+        labels = [text.get_window_extent() for text in ax.get_xticklabels() if text.get_text()]
+    inside = [box for box in labels if ax.bbox.x0 <= 0.5 * (box.x0 + box.x1) <= ax.bbox.x1]
+    numbers = [text.get_window_extent() for text in ax.texts]
+    assert all(ax.bbox.contains(*corner) for box in numbers for corner in (box.min, box.max))
+    assert len(inside) > 1
+    for first, second in itertools.pairwise(inside):
+        assert second.x0 - first.x1 > 0.5 * 7.0 / 72.0 * figure.dpi

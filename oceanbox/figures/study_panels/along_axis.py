@@ -145,7 +145,7 @@ def _finish(ax: Axes, study: StudyData, options: ScalarAlongAxis, axis: str) -> 
     across = [dim for dim in failed.dims if dim not in along.dims]
     mark_failed(ax, x.values[failed.any(across).values])
     if along.dtype.kind not in "fiu":
-        set_names(ax, [shown_name(str(value)) for value in along.values])
+        set_names(ax, [shown_name(str(value)) for value in along.values.ravel()])
     else:
         set_scale(ax, "x", options.axis_scale)
     set_scale(ax, "y", "linear")

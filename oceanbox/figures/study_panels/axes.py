@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import TYPE_CHECKING, Literal
 
+import numpy as np
 from matplotlib import rcParams
 from matplotlib.ticker import FuncFormatter, LogLocator, MaxNLocator, NullFormatter
 
@@ -13,10 +14,11 @@ from oceanbox.figures.axes import width_points
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
-__all__ = ["legend_over", "set_names", "set_scale"]
+__all__ = ["height_points", "legend_over", "set_names", "set_scale"]
 
 _STEPS = (1, 2, 5, 10)
 _NUMBERS = 9  # at most so many steps between numbers on an axis
+_MARGIN_POINTS = 48.0  # above and below axes, for the letter, the numbers and the label
 _LETTER_POINTS = 14.0
 _PER_LETTER = 0.6  # width of a letter, in sizes of the font
 _SURE = 0.8  # of the estimated width of a panel, which colour bars in other rows make narrower
@@ -48,6 +50,16 @@ def set_names(ax: Axes, names: Sequence[str]) -> None:
             text.set_rotation_mode("anchor")
 
 
+def height_points(ax: Axes) -> float:
+    """Height that axes will have when the layout is solved, estimated from their place in the grid; in points."""
+    figure, place = ax.get_figure(root=True), ax.get_subplotspec()
+    if figure is None or place is None:
+        return float(ax.bbox.height * 72.0 / (figure.dpi if figure is not None else 72.0))
+    ratios = np.asarray(place.get_gridspec().get_height_ratios(), dtype=float)
+    share = float(ratios[list(place.rowspan)].sum() / ratios.sum())
+    return max(float(figure.get_figheight() * 72.0 * share) - _MARGIN_POINTS, 1.0)
+
+
 def _steps_that_fit(ax: Axes) -> int:
     """The most steps along the panel for which numbers keep apart."""
     low, high = sorted(ax.get_xlim())
@@ -66,11 +78,14 @@ def legend_over(ax: Axes, frame: Axes) -> None:
 
     frame  the axes of the whole panel
     """
-    _, labels = ax.get_legend_handles_labels()
+    handles, labels = ax.get_legend_handles_labels()
     if not labels:
         return
     size = float(rcParams["legend.fontsize"])
     handle = rcParams["legend.handlelength"] + rcParams["legend.handletextpad"] + rcParams["legend.columnspacing"]
     entry = size * (handle + _PER_LETTER * max(len(label) for label in labels))
-    columns = max(1, min(len(labels), int((_SURE * width_points(frame) - _LETTER_POINTS) / entry)))
-    ax.legend(loc="lower right", bbox_to_anchor=(1.0, 1.0), borderaxespad=0.4, ncol=columns)
+    columns = int((_SURE * width_points(frame) - _LETTER_POINTS) / entry)
+    if columns == 0:  # even one is too wide: what stands in brackets goes below
+        labels = [label.replace(" (", "\n(") for label in labels]
+    columns = max(1, min(len(labels), columns))
+    ax.legend(handles, labels, loc="lower right", bbox_to_anchor=(1.0, 1.0), borderaxespad=0.4, ncol=columns)

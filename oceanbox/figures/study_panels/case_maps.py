@@ -17,6 +17,7 @@ from oceanbox.errors import UnreadableResult
 from oceanbox.figures import fields
 from oceanbox.figures.axes import label_latitude, label_longitude, round_levels, width_points
 from oceanbox.figures.study_options import CaseMaps
+from oceanbox.figures.study_panels.axes import height_points
 from oceanbox.figures.study_panels.cases import CaseView, StudyData
 from oceanbox.figures.study_panels.marks import case_words, extend_of
 from oceanbox.figures.study_panels.words import drawn, field_label, label_of
@@ -32,7 +33,9 @@ Array = NDArray[np.float64]
 
 MOST_MAPS = 16
 _LEVELS = 20
-_GAP_ACROSS, _GAP_UP = 0.07, 0.16  # between maps, in widths and heights of a map
+_GAP_ACROSS = 0.07  # between maps, in widths of a map
+# Heights of a line of a title, of a gap, of numbers with a label, of the colour bar with its own.
+_LINE_POINTS, _GAP_POINTS, _FOOT_POINTS, _BAR_POINTS = 9.0, 5.0, 22.0, 30.0
 _SIGNED = "RdBu_r"
 _DEGREE_STEPS = (5.0, 10.0, 15.0, 20.0, 30.0, 45.0)
 _TITLE_POINTS, _LETTER_POINTS = 6.5, 14.0
@@ -56,8 +59,9 @@ def case_maps(ax: Axes, study: StudyData, options: CaseMaps) -> Axes:
     signed = options.minus_case is not None or _has_two_signs(options.field, values)
     levels = _levels(values, options, signed)
     norm = BoundaryNorm(levels, 256, extend=extend_of(values, levels))
-    titles = case_words(study, [item.case for item in maps])
-    frames = _frames(ax, len(maps), options.maps_across or len(maps))
+    across = options.maps_across or len(maps)
+    titles = [_folded(words, ax, across) for words in case_words(study, [item.case for item in maps])]
+    frames = _frames(ax, titles, across)
     for inner, item, text in zip(frames, maps, titles, strict=True):
         mesh = inner.pcolormesh(
             item.place.x_face,
@@ -67,8 +71,8 @@ def case_maps(ax: Axes, study: StudyData, options: CaseMaps) -> Axes:
             norm=norm,
             rasterized=True,
         )
-        inner.set_title(_folded(text, ax, options.maps_across or len(maps)), loc="right", fontsize=_TITLE_POINTS)
-    _label(frames, maps, options.maps_across or len(maps))
+        inner.set_title(text, loc="right", fontsize=_TITLE_POINTS)
+    _label(frames, maps, across)
     figure = ax.get_figure(root=False)
     if figure is not None:
         bar = figure.colorbar(
@@ -108,16 +112,20 @@ def _differences(maps: Sequence[_Map], base: _Map) -> list[_Map]:
     return [item._replace(values=item.values - base.values) for item in maps]
 
 
-def _frames(ax: Axes, count: int, across: int) -> list[Axes]:
-    """Axes for maps in rows, in the place of the given ones."""
+def _frames(ax: Axes, titles: Sequence[str], across: int) -> list[Axes]:
+    """Axes for maps in rows, in the place of the given ones, with room for titles of so many lines."""
     ax.set_axis_off()
-    rows = -(-count // across)
+    rows = -(-len(titles) // across)
     width = 1.0 / (across + _GAP_ACROSS * (across - 1))
-    height = 1.0 / (rows + _GAP_UP * (rows - 1))
+    lines = max(title.count("\n") + 1 for title in titles)
+    ragged = len(titles) % across and rows > 1  # a map with nothing below it has numbers and a label there
+    points = _LINE_POINTS * lines + _GAP_POINTS + (_FOOT_POINTS if ragged else 0.0)
+    gap = min(points / (height_points(ax) - _BAR_POINTS), 0.5 / rows) if rows > 1 else 0.0
+    height = (1.0 - gap * (rows - 1)) / rows
     found = []
-    for index in range(count):
+    for index in range(len(titles)):
         row, column = divmod(index, across)
-        left, top = column * width * (1 + _GAP_ACROSS), 1.0 - row * height * (1 + _GAP_UP)
+        left, top = column * width * (1 + _GAP_ACROSS), 1.0 - row * (height + gap)
         found.append(ax.inset_axes((left, top - height, width, height)))
     return found
 

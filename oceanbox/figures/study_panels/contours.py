@@ -6,6 +6,7 @@ from collections.abc import Iterable
 from typing import TYPE_CHECKING
 
 import numpy as np
+from matplotlib.patheffects import withStroke
 from numpy.typing import NDArray
 
 from oceanbox.errors import UnreadableResult
@@ -50,6 +51,8 @@ def scalar_map(ax: Axes, study: StudyData, options: ScalarMap) -> Axes:
     set_scale(ax, "y", options.y_scale)
     ax.set_xlabel(axis_label(study.along(x_axis)))
     ax.set_ylabel(axis_label(study.along(y_axis)))
+    for text in texts:
+        text.set_path_effects([withStroke(linewidth=1.5, foreground="white")])
     _drop_clipped(ax, texts)
     figure = ax.get_figure(root=False)
     if figure is not None:
