@@ -34,8 +34,7 @@ Array = NDArray[np.float64]
 MOST_MAPS = 16
 _LEVELS = 20
 _GAP_ACROSS = 0.07  # between maps, in widths of a map
-# Heights of a line of a title, of a gap, of numbers with a label, of the colour bar with its own.
-_LINE_POINTS, _GAP_POINTS, _FOOT_POINTS, _BAR_POINTS = 9.0, 5.0, 22.0, 30.0
+_LINE_POINTS, _GAP_POINTS, _BAR_POINTS = 9.0, 5.0, 30.0  # heights of a line of a title, of a gap, of the colour bar
 _SIGNED = "RdBu_r"
 _DEGREE_STEPS = (5.0, 10.0, 15.0, 20.0, 30.0, 45.0)
 _TITLE_POINTS, _LETTER_POINTS = 6.5, 14.0
@@ -118,9 +117,8 @@ def _frames(ax: Axes, titles: Sequence[str], across: int) -> list[Axes]:
     rows = -(-len(titles) // across)
     width = 1.0 / (across + _GAP_ACROSS * (across - 1))
     lines = max(title.count("\n") + 1 for title in titles)
-    ragged = len(titles) % across and rows > 1  # a map with nothing below it has numbers and a label there
-    points = _LINE_POINTS * lines + _GAP_POINTS + (_FOOT_POINTS if ragged else 0.0)
-    gap = min(points / (height_points(ax) - _BAR_POINTS), 0.5 / rows) if rows > 1 else 0.0
+    room = max(height_points(ax) - _BAR_POINTS, 1.0)
+    gap = min((_LINE_POINTS * lines + _GAP_POINTS) / room, 0.5 / rows)
     height = (1.0 - gap * (rows - 1)) / rows
     found = []
     for index in range(len(titles)):
