@@ -62,22 +62,25 @@ def test_a_worker_that_dies_is_replaced_and_its_case_is_run_again(tmp_path: Path
     killed: list[int] = []
 
     def kill_once(progress: StudyProgress) -> None:
-        if progress.running and not killed:
-            killed.append(engine._lanes[0].pid)
-            os.kill(killed[0], signal.SIGKILL)
+        pid = engine._lanes[0].pid
+        if progress.running and pid is not None and not killed:
+            killed.append(pid)
+            os.kill(pid, signal.SIGKILL)
 
     with LocalEngine(1) as engine:
         statuses = execute(loaded.cases, tmp_path, engine, kill_once)
-        assert engine._lanes[0].pid not in (0, *killed)
+        assert engine._lanes[0].pid not in (None, *killed)
     assert killed and [status.state for status in statuses] == [State.DONE] * 3
 
 
 def test_a_case_that_kills_its_worker_every_time_fails_and_the_next_one_runs(tmp_path: Path) -> None:
-    one, other, _ = study_of(tmp_path, {"axes": [TARGETS]}).cases
+    lengths = {"name": "length", "key": "evolve.duration_days", "values": [3.0e5, 3.0]}
+    one, other = study_of(tmp_path, {"axes": [lengths]}).cases
 
     def kill_the_first(progress: StudyProgress) -> None:
-        if one.name in progress.running and engine._lanes[0].pid:
-            os.kill(engine._lanes[0].pid, signal.SIGKILL)
+        pid = engine._lanes[0].pid
+        if one.name in progress.running and pid is not None and alive(pid):
+            os.kill(pid, signal.SIGKILL)
 
     with LocalEngine(1) as engine:
         lost, done = execute([one, other], tmp_path, engine, kill_the_first)

@@ -76,7 +76,14 @@ class _Lane:
         self.attempts = 0
         self.future: Future[Answer] | None = None
         self._pool: ProcessPoolExecutor | None = None
-        self.pid = 0
+        self._pid: Future[int] | None = None
+
+    @property
+    def pid(self) -> int | None:
+        """The number of the process; None, and never 0 which would mean this one too, while there is none that answers."""
+        if self._pid is None or not self._pid.done() or self._pid.exception() is not None:
+            return None
+        return self._pid.result()
 
     def start(self, task: Task) -> None:
         """Give the worker a task, or the same task once more."""
@@ -94,14 +101,14 @@ class _Lane:
         if self._pool is None:
             with _one_thread_each():
                 self._pool = ProcessPoolExecutor(1, mp_context=get_context("spawn"), initializer=_begin)
-                self.pid = self._pool.submit(os.getpid).result()
+                self._pid = self._pool.submit(os.getpid)  # not awaited, so that all workers start at once
         return self._pool
 
     def drop(self) -> None:
         """Forget the process."""
         if self._pool is not None:
             self._pool.shutdown(wait=False, cancel_futures=True)
-        self._pool, self.pid = None, 0
+        self._pool, self._pid = None, None
 
     def close(self) -> None:
         """End the process, once its task has ended."""
@@ -169,8 +176,9 @@ class LocalEngine:
         # Asked again and again: a run that is just being set up is not listening yet.
         while running := [lane for lane in busy if lane.future is not None and not lane.future.done()]:
             for lane in running:
-                with contextlib.suppress(ProcessLookupError):
-                    os.kill(lane.pid, signal.SIGTERM)
+                if lane.pid is not None:
+                    with contextlib.suppress(ProcessLookupError):
+                        os.kill(lane.pid, signal.SIGTERM)
             wait([lane.future for lane in running if lane.future is not None], ASK_SECONDS)
         return [self._last_answer(lane) for lane in busy]
 
