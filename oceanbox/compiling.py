@@ -14,7 +14,7 @@ from typing import Any, TypeVar
 
 import numba
 
-__all__ = ["cache_is_warm", "kernel"]
+__all__ = ["cache_is_warm", "kernel", "part"]
 
 _KERNEL_PACKAGES = ("grid", "physics", "stepping")
 _F = TypeVar("_F", bound=Callable[..., Any])
@@ -73,5 +73,12 @@ def kernel(function: _F) -> _F:
     arithmetic is allowed: the parts that assume no NaN would blind the check for a run that blows up.
     """
     compile_it: Any = numba.njit(cache=True, error_model="numpy", fastmath={"contract"}, nogil=True)
+    compiled: _F = compile_it(function)
+    return compiled
+
+
+def part(function: _F) -> _F:
+    """As `kernel`, for a part of a kernel that is always compiled into its caller, so that its many arguments cost nothing."""
+    compile_it: Any = numba.njit(cache=True, error_model="numpy", fastmath={"contract"}, nogil=True, forceinline=True)
     compiled: _F = compile_it(function)
     return compiled

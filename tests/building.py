@@ -93,11 +93,10 @@ def set_state(
 
 def fill_velocity_edges(model: Model) -> None:
     """Ghost cells of the velocities."""
-    from oceanbox.grid.edges import fill_x_face_edges, fill_y_face_edges
+    from oceanbox.stepping.forward_backward import fill_velocity_edges
 
-    for k in range(model.state.thickness.shape[0]):
-        fill_x_face_edges(model.state.velocity_x[k], model.constants.periodic_x, model.constants.tangential_sign)
-        fill_y_face_edges(model.state.velocity_y[k], model.constants.periodic_x, model.constants.tangential_sign)
+    for u, v in zip(model.state.velocity_x, model.state.velocity_y, strict=True):
+        fill_velocity_edges(2, u.shape[0] - 2, u, v, model.constants)
 
 
 def run_days(model: Model, days: float) -> None:

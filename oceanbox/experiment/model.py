@@ -13,7 +13,7 @@ from oceanbox.experiment.assembly import Setup
 from oceanbox.physics.state import Constants, Ledger, State, empty_ledger
 from oceanbox.stepping.forward_backward import advance_forward_backward
 from oceanbox.stepping.limits import StepLimits, step_limits
-from oceanbox.stepping.memory import Memory, empty_memory, empty_workspace
+from oceanbox.stepping.memory import Memory, belt_rows, empty_memory, empty_workspace
 from oceanbox.stepping.runge_kutta import STRONG_3, Tableau, advance_runge_kutta, empty_stages
 
 __all__ = ["Clock", "Model", "choose_step", "deepest_expected", "limits_for", "warmest_anomaly"]
@@ -96,9 +96,10 @@ class Model:
         self.state = State(*(field.copy() for field in setup.initial))
         self.memory: Memory = empty_memory(self.grid, layers)
         self.ledger: Ledger = empty_ledger(self.grid, layers)
-        self._work = empty_workspace(self.grid, layers)
         self._tableau = tableau
         self._runge_kutta = setup.config.numerics.scheme != "forward_backward"
+        rows, columns = self.grid.shape
+        self._work = empty_workspace(self.grid, layers, rows if self._runge_kutta else belt_rows(columns, layers))
         self._stages = empty_stages(self.grid, layers, tableau) if self._runge_kutta else None
         self.open_books()
 

@@ -8,6 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from oceanbox.compiling import kernel
+from oceanbox.physics.rows import place
 from oceanbox.physics.state import Constants
 
 __all__ = ["buoyancy", "layer_buoyancy", "thermal_expansion"]
@@ -29,9 +30,15 @@ def buoyancy(theta: float, sigma: float, constants: Constants) -> float:
 
 
 @kernel
-def layer_buoyancy(h: Array, heat: Array, salt: Array, constants: Constants, b: Array) -> None:
-    """b of every cell, ghost cells included, from h, h Theta and h Sigma; all (ny+4, nx+4)."""
-    rows, columns = h.shape
-    for j in range(rows):
-        for i in range(columns):
-            b[j, i] = buoyancy(heat[j, i] / h[j, i], salt[j, i] / h[j, i], constants)
+def layer_buoyancy(first: int, end: int, h: Array, heat: Array, salt: Array, constants: Constants, b: Array) -> None:
+    """b in rows ``first`` to ``end`` - 1, ghost cells included, from h, h Theta and h Sigma (ny+4, nx+4); ``b`` a belt."""
+    columns = h.shape[1]
+    for j in range(first, end):
+        here = place(j, b.shape[0])
+        if constants.salty:
+            for i in range(columns):
+                per_h = 1.0 / h[j, i]
+                b[here, i] = buoyancy(heat[j, i] * per_h, salt[j, i] * per_h, constants)
+        else:
+            for i in range(columns):
+                b[here, i] = buoyancy(heat[j, i] / h[j, i], 0.0, constants)

@@ -5,29 +5,12 @@ destroys volume, then an outcropped column hands itself to the abyss.  What each
 books are exact whatever the step.
 """
 
-import math
-
 from oceanbox.compiling import kernel
 from oceanbox.physics.buoyancy import thermal_expansion
+from oceanbox.physics.elementary import decay, mean_of_decay, mean_of_dilution
 from oceanbox.physics.state import Constants
 
 __all__ = ["outcrop_share", "surface_heating", "transformed_thickness"]
-
-
-@kernel
-def mean_of_decay(z: float) -> float:
-    """(1 - exp(-z))/z for z >= 0, to round-off also at 0 (the series ends below 1e-15 for z < 0.01)."""
-    if z < 0.01:
-        return 1.0 - z * (0.5 - z * (1.0 / 6.0 - z * (1.0 / 24.0 - z * (1.0 / 120.0 - z / 720.0))))
-    return -math.expm1(-z) / z
-
-
-@kernel
-def mean_of_dilution(x: float) -> float:
-    """ln(1 + x)/x for x >= 0, to round-off also at 0 (the series ends below 1e-16 for x < 0.001)."""
-    if x < 1e-3:
-        return 1.0 - x * (0.5 - x * (1.0 / 3.0 - x * (0.25 - x * 0.2)))
-    return math.log1p(x) / x
 
 
 @kernel
@@ -50,7 +33,7 @@ def surface_heating(
 
     A slab and an upwelling column are exact at any step, and Theta never passes its equilibrium.
     """
-    w = entrained / dt
+    w = entrained * (1.0 / dt)
     dilution = dt * per_h * mean_of_dilution(entrained * per_h)
     z = (w + restoring) * dilution
     change = (prescribed + restoring * target - (w + restoring) * theta) * dilution * mean_of_decay(z)
@@ -66,7 +49,7 @@ def outcrop_share(theta: float, b: float, constants: Constants) -> float:
     margin = constants.outcrop_margin
     if margin == 0.0:
         return 1.0
-    x = min(theta / margin, b / (constants.gravity * constants.expansion_abyss * margin))
+    x = min(theta * (1.0 / margin), b * (1.0 / (constants.gravity * constants.expansion_abyss * margin)))
     x = min(max(x, 0.0), 1.0)
     return x * x * (3.0 - 2.0 * x)
 
@@ -85,10 +68,8 @@ def transformed_thickness(
       (ii) the heat needed to make abyssal water of it, Theta w_d dt, is at most what the air took.
     """
     loss = constants.gravity * (thermal_expansion(theta, constants) * heating + constants.contraction * freshening)
-    if loss >= 0.0 or b <= 0.0 or heat <= 0.0 or constants.efficiency == 0.0:
-        return 0.0
-    efficiency = constants.efficiency
-    if constants.efficiency_scale < math.inf:
-        efficiency *= math.exp(-theta / constants.efficiency_scale)
-    thickness = min(-efficiency * loss / b, -heating * h / heat)
-    return max(min(thickness, h - constants.floor_depth), 0.0)
+    losing = loss < 0.0 and b > 0.0 and heat > 0.0
+    # The exponent of a constant efficiency is 0.  Where nothing is lost the quotients mean nothing.
+    efficiency = constants.efficiency * decay(max(theta, 0.0) * (1.0 / constants.efficiency_scale))
+    thickness = min(-efficiency * loss / (b if losing else 1.0), -heating * h / (heat if losing else 1.0))
+    return max(min(thickness, h - constants.floor_depth), 0.0) if losing else 0.0

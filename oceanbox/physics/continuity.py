@@ -1,29 +1,40 @@
-"""Volume: transports through the faces, and the thickness they leave behind."""
+"""Volume: transports through the faces, and the thickness they leave behind.
+
+Rows ``first`` to ``end`` - 1 are worked on; belts are explained in `physics.rows`.
+"""
 
 import numpy as np
 from numpy.typing import NDArray
 
 from oceanbox.compiling import kernel
 from oceanbox.physics.limiter import limited_face_value
+from oceanbox.physics.rows import place
 from oceanbox.physics.state import Constants
 
-__all__ = ["keep_thickness_positive", "mean_thickness", "volume_transport"]
+__all__ = ["LARGEST_OUTFLOW", "limit_outflow", "mean_thickness", "outflow_share", "transport_x", "transport_y"]
 
 Array = NDArray[np.float64]
 
 
 @kernel
-def mean_thickness(h: Array, constants: Constants, hx: Array, hy: Array) -> None:
-    """<h>^x on x faces and <h>^y on y faces, m, ghost faces included; in linear dynamics the rest depth everywhere."""
-    rows, columns = h.shape
-    if constants.linear_depth > 0.0:
-        hx[:, :] = constants.linear_depth
-        hy[:, :] = constants.linear_depth
-        return
-    for j in range(1, rows):
-        for i in range(1, columns):
-            hx[j, i] = 0.5 * (h[j, i - 1] + h[j, i])
-            hy[j, i] = 0.5 * (h[j - 1, i] + h[j, i])
+def mean_thickness(first: int, end: int, h: Array, constants: Constants, hx: Array, hy: Array) -> None:
+    """<h>^x on x faces and <h>^y on y faces, m, ghost faces included; in linear dynamics the rest depth everywhere.
+
+    ``h`` (ny+4, nx+4), ``hx`` and ``hy`` belts; ``first`` is at least 1.
+    """
+    columns = h.shape[1]
+    depth = constants.linear_depth
+    for j in range(first, end):
+        here = place(j, hx.shape[0])
+        if depth > 0.0:
+            for i in range(columns):
+                hx[here, i] = depth
+                hy[here, i] = depth
+        else:
+            for n in range(columns - 1):
+                i = n + 1
+                hx[here, i] = 0.5 * (h[j, i - 1] + h[j, i])
+                hy[here, i] = 0.5 * (h[j - 1, i] + h[j, i])
 
 
 @kernel
@@ -35,27 +46,41 @@ def upwind_thickness(behind: float, west: float, east: float, beyond: float, spe
 
 
 @kernel
-def volume_transport(
-    h: Array, hx: Array, hy: Array, u: Array, v: Array, constants: Constants, U: Array, V: Array
-) -> None:
-    """U = <h>^x u on x faces, V = <h>^y v on y faces, m2 s-1, from the thickness on faces.
+def transport_x(first: int, end: int, h: Array, hx: Array, u: Array, constants: Constants, U: Array) -> None:
+    """U = <h>^x u on x faces, m2 s-1, from the thickness on faces.
 
     The centred mean makes the flow conserve energy together with ``momentum`` (Sadourny 1975, J. Atmos. Sci. 32, 680); an
-    upwind-biased thickness trades that for monotone fronts.  All arrays (ny+4, nx+4).
+    upwind-biased thickness trades that for monotone fronts.  ``h`` and ``u`` (ny+4, nx+4), ``hx`` a belt, ``U`` either.
     """
-    rows, columns = h.shape
-    if constants.upwind_thickness and constants.linear_depth == 0.0:
-        for j in range(2, rows - 1):
+    columns = h.shape[1]
+    upwind = constants.upwind_thickness and constants.linear_depth == 0.0
+    for j in range(first, end):
+        out, here = place(j, U.shape[0]), place(j, hx.shape[0])
+        if upwind:
             for n in range(columns - 3):
                 i = n + 2
-                U[j, i] = u[j, i] * upwind_thickness(h[j, i - 2], h[j, i - 1], h[j, i], h[j, i + 1], u[j, i])
-            for i in range(1, columns - 1):
-                V[j, i] = v[j, i] * upwind_thickness(h[j - 2, i], h[j - 1, i], h[j, i], h[j + 1, i], v[j, i])
-        return
-    for j in range(2, rows - 1):
-        for i in range(1, columns - 1):
-            U[j, i] = hx[j, i] * u[j, i]
-            V[j, i] = hy[j, i] * v[j, i]
+                U[out, i] = u[j, i] * upwind_thickness(h[j, i - 2], h[j, i - 1], h[j, i], h[j, i + 1], u[j, i])
+        else:
+            for n in range(columns - 2):
+                i = n + 1
+                U[out, i] = hx[here, i] * u[j, i]
+
+
+@kernel
+def transport_y(first: int, end: int, h: Array, hy: Array, v: Array, constants: Constants, V: Array) -> None:
+    """V = <h>^y v on y faces, as `transport_x`; ``first`` is at least 2, ``end`` at most the last row."""
+    columns = h.shape[1]
+    upwind = constants.upwind_thickness and constants.linear_depth == 0.0
+    for j in range(first, end):
+        out, here = place(j, V.shape[0]), place(j, hy.shape[0])
+        if upwind:
+            for n in range(columns - 2):
+                i = n + 1
+                V[out, i] = v[j, i] * upwind_thickness(h[j - 2, i], h[j - 1, i], h[j, i], h[j + 1, i], v[j, i])
+        else:
+            for n in range(columns - 2):
+                i = n + 1
+                V[out, i] = hy[here, i] * v[j, i]
 
 
 # A cell may lose at most this share of its water through its faces in one step.
@@ -63,51 +88,53 @@ LARGEST_OUTFLOW = 0.9
 
 
 @kernel
-def outflow_share(h: Array, U: Array, V: Array, j: int, i: int, dt_dx: float, dt_dy: float) -> float:
-    """The share of cell (j, i) that leaves through its four faces in one step."""
-    leaving = dt_dx * (max(U[j, i + 1], 0.0) + max(-U[j, i], 0.0))
-    leaving += dt_dy * (max(V[j + 1, i], 0.0) + max(-V[j, i], 0.0))
-    return leaving / h[j, i]
+def outflow_share(
+    first: int, end: int, per_h: Array, U: Array, V: Array, dt: float, constants: Constants, share: Array
+) -> int:
+    """The share of its water that leaves each cell through its four faces in a step; how many cells lose too much.
+
+    All belts.  In linear dynamics the thickness is a perturbation about a rest depth and no cell loses too much.
+    """
+    if constants.linear_depth > 0.0:
+        return 0
+    columns = U.shape[1]
+    dt_dx = dt / constants.dx
+    dt_dy = dt / constants.dy
+    crowded = 0
+    for j in range(first, end):
+        here, north = place(j, U.shape[0]), place(j + 1, U.shape[0])
+        for n in range(columns - 4):
+            i = n + 2
+            leaving = dt_dx * (max(U[here, i + 1], 0.0) + max(-U[here, i], 0.0))
+            leaving += dt_dy * (max(V[north, i], 0.0) + max(-V[here, i], 0.0))
+            share[here, i] = leaving * per_h[here, i]
+            crowded += share[here, i] > LARGEST_OUTFLOW
+    return crowded
 
 
 @kernel
-def keep_thickness_positive(h: Array, U: Array, V: Array, dt: float, constants: Constants, share: Array) -> int:
+def limit_outflow(first: int, end: int, rows: int, U: Array, V: Array, share: Array) -> int:
     """Scale down the outflow of cells which would lose more than nine tenths of their water in this step.
 
     The scaled transports then move water, heat and salt alike, so nothing is lost; the number of faces changed is returned
     and reported.  Flux correction of the kind of Zalesak (1979, J. Comput. Phys. 31, 335), towards zero flux.
-    In linear dynamics the thickness is a perturbation about a rest depth and nothing is limited.
+    ``share`` holds these rows and the one south of them; all belts of ``rows`` compute rows.
     """
-    if constants.linear_depth > 0.0:
-        return 0
-    rows, columns = h.shape
-    dt_dx = dt / constants.dx
-    dt_dy = dt / constants.dy
-    worst = 0.0
-    for j in range(2, rows - 2):
-        for n in range(columns - 4):
-            i = n + 2
-            share[j, i] = outflow_share(h, U, V, j, i, dt_dx, dt_dy)
-            worst = max(worst, share[j, i])
-    if worst <= LARGEST_OUTFLOW:
-        return 0
+    columns = U.shape[1]
     nx = columns - 4
-    for j in range(2, rows - 2):
-        share[j, 1] = share[j, nx + 1]
-        share[j, nx + 2] = share[j, 2]
     changed = 0
-    for j in range(2, rows - 2):
+    for j in range(first, min(end, rows - 2)):
+        here, south = place(j, U.shape[0]), place(j - 1, U.shape[0])
+        share[here, 1] = share[here, nx + 1]
+        share[here, nx + 2] = share[here, 2]
         for n in range(columns - 3):
             i = n + 2
-            donor = share[j, i - 1] if U[j, i] > 0.0 else share[j, i]
-            if donor > LARGEST_OUTFLOW and U[j, i] != 0.0:
-                U[j, i] *= LARGEST_OUTFLOW / donor
+            donor = share[here, i - 1] if U[here, i] > 0.0 else share[here, i]
+            if donor > LARGEST_OUTFLOW and U[here, i] != 0.0:
+                U[here, i] *= LARGEST_OUTFLOW / donor
                 changed += 1
-    for j in range(3, rows - 2):
-        for n in range(columns - 4):
-            i = n + 2
-            donor = share[j - 1, i] if V[j, i] > 0.0 else share[j, i]
-            if donor > LARGEST_OUTFLOW and V[j, i] != 0.0:
-                V[j, i] *= LARGEST_OUTFLOW / donor
+            donor = share[south, i] if V[here, i] > 0.0 else share[here, i]
+            if j > 2 and i < nx + 2 and donor > LARGEST_OUTFLOW and V[here, i] != 0.0:
+                V[here, i] *= LARGEST_OUTFLOW / donor
                 changed += 1
     return changed

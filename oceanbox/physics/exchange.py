@@ -4,10 +4,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from oceanbox.compiling import kernel
-from oceanbox.grid.edges import fill_centre_edges, fill_x_face_edges, fill_y_face_edges
 from oceanbox.physics.buoyancy import buoyancy
 from oceanbox.physics.column import outcrop_share, surface_heating, transformed_thickness
-from oceanbox.physics.entrainment import diffusive_gain, mixed_layer_transport, shoaling_gain, upwelling_gain
+from oceanbox.physics.entrainment import diffusive_gain, shoaling_gain, upwelling_gain
+from oceanbox.physics.rows import place
 from oceanbox.physics.state import Constants, Forcing, Ledger
 
 __all__ = ["dilute_momentum", "exchange"]
@@ -17,143 +17,157 @@ Array = NDArray[np.float64]
 
 @kernel
 def entrain(
-    h: Array, Mx: Array, My: Array, forcing: Forcing, constants: Constants, dt: float, ledger: Ledger, gain: Array
-) -> None:
+    first: int, end: int, h: Array, Mx: Array, My: Array, forcing: Forcing, constants: Constants, dt: float, ledger: Ledger,
+    gain: Array,
+) -> None:  # fmt: skip
     """``gain`` = water entrained in this step, m: the sum of the closures, each booked under its name."""
-    rows, columns = h.shape
+    columns = h.shape[1]
+    belt = gain.shape[0]
     per_dx = 1.0 / constants.dx
     per_dy = 1.0 / constants.dy
-    for j in range(2, rows - 2):
+    for j in range(first, end):
+        here, north = place(j, belt), place(j + 1, belt)
         for n in range(columns - 4):
             i = n + 2
             prescribed = forcing.prescribed_entrainment[j, i] * dt
             ledger.entrainment_prescribed[j, i] += prescribed
-            gain[j, i] = prescribed
-    if constants.mixed_depth > 0.0:
-        for j in range(2, rows - 2):
+            gain[here, i] = prescribed
+        if constants.mixed_depth > 0.0:
             for n in range(columns - 4):
                 i = n + 2
-                upwelling = (Mx[j, i + 1] - Mx[j, i]) * per_dx + (My[j + 1, i] - My[j, i]) * per_dy
+                upwelling = (Mx[here, i + 1] - Mx[here, i]) * per_dx + (My[north, i] - My[here, i]) * per_dy
                 up = upwelling_gain(h[j, i], upwelling, dt, constants)
                 ledger.entrainment_upwelling[j, i] += up
-                gain[j, i] += up
-    if constants.diapycnal_diffusivity > 0.0:
-        for j in range(2, rows - 2):
+                gain[here, i] += up
+        if constants.diapycnal_diffusivity > 0.0:
             for n in range(columns - 4):
                 i = n + 2
                 diffused = diffusive_gain(h[j, i], dt, constants)
                 ledger.entrainment_diffusive[j, i] += diffused
-                gain[j, i] += diffused
-    if constants.shoaling_depth > 0.0:
-        for j in range(2, rows - 2):
+                gain[here, i] += diffused
+        if constants.shoaling_depth > 0.0:
             for n in range(columns - 4):
                 i = n + 2
                 kept = shoaling_gain(h[j, i], dt, constants)
                 ledger.entrainment_shoaling[j, i] += kept
-                gain[j, i] += kept
+                gain[here, i] += kept
+
+
+@kernel
+def warm(first: int, end: int, h: Array, heat: Array, gain: Array, forcing: Forcing, dt: float, heating: Array) -> None:
+    """``heating`` = heat the surface would give each column if all of it were warm layer, K m; ``gain`` is taken in meanwhile."""
+    for j in range(first, end):
+        here = place(j, gain.shape[0])
+        for n in range(h.shape[1] - 4):
+            i = n + 2
+            per_h = 1.0 / h[j, i]
+            heating[here, i] = surface_heating(
+                h[j, i], per_h, heat[j, i] * per_h, gain[here, i], forcing.prescribed_heating[j, i],
+                forcing.restoring_velocity[j, i], forcing.target_anomaly[j, i], dt,
+            )  # fmt: skip
+
+
+@kernel
+def transform(
+    first: int, end: int, h: Array, heat: Array, salt: Array, gain: Array, forcing: Forcing, constants: Constants,
+    dt: float, ledger: Ledger, heating: Array,
+) -> None:  # fmt: skip
+    """h += w_e dt - w_d dt, heat += heating, salt -= S_ref (P - E) dt + w_d Sigma dt, where loss fades at the outcrop."""
+    for j in range(first, end):
+        here = place(j, gain.shape[0])
+        for n in range(h.shape[1] - 4):
+            i = n + 2
+            q0, wanted = heat[j, i], heating[here, i]
+            per_h = 1.0 / h[j, i]
+            h1 = h[j, i] + gain[here, i]
+            theta = q0 * per_h
+            b = buoyancy(theta, salt[j, i] * per_h, constants)
+            freshening = forcing.freshening[j, i] * dt
+            s1 = salt[j, i] - freshening
+            # Loss fades at the outcrop, and cannot take heat that is not there: what was applied is what is booked.
+            cooling = wanted < 0.0
+            possible = max(wanted * outcrop_share(theta, b, constants), -max(q0, 0.0))
+            given = possible if cooling else wanted
+            prescribed = forcing.prescribed_heating[j, i] * dt * (possible / wanted if cooling else 1.0)
+            lost = transformed_thickness(h1, theta, b, q0, given, freshening, constants)
+            destroyed = lost if cooling else 0.0
+            carried = destroyed * s1 / h1 if constants.salt_carried else 0.0
+            ledger.heat_prescribed[j, i] += prescribed
+            ledger.heat_restoring[j, i] += given - prescribed
+            ledger.virtual_salt[j, i] -= freshening
+            ledger.transformation[j, i] -= destroyed
+            ledger.transformation_salt[j, i] -= carried
+            h[j, i] = h1 - destroyed
+            heat[j, i] = q0 + given
+            salt[j, i] = s1 - carried
+
+
+@kernel
+def outcrop(
+    first: int, end: int, h: Array, heat: Array, salt: Array, constants: Constants, dt: float, ledger: Ledger
+) -> None:
+    """Columns that have nearly become abyss hand themselves over: h, heat and salt lose the same share of what they hold."""
+    handing_over = dt / (constants.outcrop_time + dt)
+    for j in range(first, end):
+        for n in range(h.shape[1] - 4):
+            i = n + 2
+            per_h = 1.0 / h[j, i]
+            theta = heat[j, i] * per_h
+            sigma = salt[j, i] * per_h
+            b = buoyancy(theta, sigma, constants)
+            share = (1.0 - outcrop_share(theta, b, constants)) * handing_over
+            handed = share * max(h[j, i] - constants.floor_depth, 0.0)
+            # A column denser than the abyss overturns: it swaps water with it besides handing some over.
+            swapped = share * (h[j, i] - handed) if b < 0.0 else 0.0
+            h[j, i] -= handed
+            heat[j, i] -= (handed + swapped) * theta
+            salt[j, i] -= (handed + swapped) * sigma
+            ledger.outcrop_volume[j, i] -= handed
+            ledger.outcrop_heat[j, i] -= (handed + swapped) * theta
+            ledger.outcrop_salt[j, i] -= (handed + swapped) * sigma
 
 
 @kernel
 def exchange(
-    h: Array,
-    heat: Array,
-    salt: Array,
-    u: Array,
-    v: Array,
-    forcing: Forcing,
-    constants: Constants,
-    wind: float,
-    dt: float,
-    ledger: Ledger,
-    Mx: Array,
-    My: Array,
-    gain: Array,
-) -> None:
-    """Entrainment, surface fluxes, transformation and outcrop of one step, applied to the top layer.
+    first: int, end: int, h: Array, heat: Array, salt: Array, forcing: Forcing, constants: Constants, dt: float,
+    ledger: Ledger, Mx: Array, My: Array, gain: Array, heating: Array,
+) -> None:  # fmt: skip
+    """Entrainment, surface fluxes, transformation and outcrop of one step, applied to rows of the top layer.
 
         h     += w_e dt - w_d dt + outcrop
         heat  += Int Q/(rho0 c_p) dt - outcrop (Theta)
         salt  -= S_ref (P - E) dt + w_d Sigma dt + outcrop (Sigma)
 
-    All arrays (ny+4, nx+4), interior cells changed; ``gain`` is left holding w_e dt for `dilute_momentum`.
+    Interior cells are changed.  ``Mx`` and ``My`` hold the transport of the mixed layer on these rows and the one north of
+    them (`entrainment.mixed_layer_transport`); ``gain`` is left holding w_e dt for `dilute_momentum`; ``heating`` is scratch:
+    belts (`physics.rows`).
     """
-    rows, columns = h.shape
-    if constants.mixed_depth > 0.0:
-        # Water has moved since the edges were filled, and a channel's seam needs both its neighbours.
-        fill_centre_edges(h, constants.periodic_x)
-        mixed_layer_transport(h, u, v, forcing.shear_x, forcing.shear_y, wind, constants, Mx, My)
-    entrain(h, Mx, My, forcing, constants, dt, ledger, gain)
-    handing_over = dt / (constants.outcrop_time + dt)
-    outcrop_buoyancy = constants.gravity * constants.expansion_abyss * constants.outcrop_margin
-    for j in range(2, rows - 2):
-        for n in range(columns - 4):
-            i = n + 2
-            h0 = h[j, i]
-            per_h = 1.0 / h0
-            h1 = h0 + gain[j, i]
-            theta = heat[j, i] * per_h
-            sigma = salt[j, i] * per_h
-            b = buoyancy(theta, sigma, constants)
-            F = forcing.prescribed_heating[j, i]
-            heating = surface_heating(
-                h0, per_h, theta, gain[j, i], F, forcing.restoring_velocity[j, i], forcing.target_anomaly[j, i], dt
-            )
-            prescribed = F * dt
-            freshening = forcing.freshening[j, i] * dt
-            s1 = salt[j, i] - freshening
-            destroyed = 0.0
-            carried = 0.0
-            if heating < 0.0:
-                # Loss fades at the outcrop, and cannot take heat that is not there: what was applied is what is booked.
-                wanted = heating
-                heating = max(heating * outcrop_share(theta, b, constants), -max(heat[j, i], 0.0))
-                prescribed *= heating / wanted
-                destroyed = transformed_thickness(h1, theta, b, heat[j, i], heating, freshening, constants)
-                if constants.salt_carried:
-                    carried = destroyed * s1 / h1
-                    s1 -= carried
-            q1 = heat[j, i] + heating
-            h1 -= destroyed
-            ledger.heat_prescribed[j, i] += prescribed
-            ledger.heat_restoring[j, i] += heating - prescribed
-            ledger.virtual_salt[j, i] -= freshening
-            ledger.transformation[j, i] -= destroyed
-            ledger.transformation_salt[j, i] -= carried
-            per_h = 1.0 / h1
-            theta = q1 * per_h
-            sigma = s1 * per_h
-            b = buoyancy(theta, sigma, constants)
-            if theta < constants.outcrop_margin or b < outcrop_buoyancy:
-                given = (1.0 - outcrop_share(theta, b, constants)) * handing_over
-                handed = given * max(h1 - constants.floor_depth, 0.0)
-                # A column denser than the abyss overturns: it swaps water with it besides handing some over.
-                swapped = given * (h1 - handed) if b < 0.0 else 0.0
-                h1 -= handed
-                q1 -= (handed + swapped) * theta
-                s1 -= (handed + swapped) * sigma
-                ledger.outcrop_volume[j, i] -= handed
-                ledger.outcrop_heat[j, i] -= (handed + swapped) * theta
-                ledger.outcrop_salt[j, i] -= (handed + swapped) * sigma
-            h[j, i] = h1
-            heat[j, i] = q1
-            salt[j, i] = s1
+    entrain(first, end, h, Mx, My, forcing, constants, dt, ledger, gain)
+    warm(first, end, h, heat, gain, forcing, dt, heating)
+    transform(first, end, h, heat, salt, gain, forcing, constants, dt, ledger, heating)
+    if constants.outcrop_margin > 0.0:
+        outcrop(first, end, h, heat, salt, constants, dt, ledger)
 
 
 @kernel
-def dilute_momentum(u: Array, v: Array, hx: Array, hy: Array, gain: Array, constants: Constants) -> None:
+def dilute_momentum(
+    first: int, end: int, u: Array, v: Array, hx: Array, hy: Array, gain: Array, constants: Constants
+) -> None:
     """u /= 1 + <w_e dt>/h on faces, h after the exchange: entrained water comes in at rest.
 
     h u is kept to (w_e dt/h)^2; the implicit form cannot turn a current round, however much is entrained.  ``gain`` is w_e dt
-    at centres; its edges are filled.
+    at centres of these rows and the one south of them; ``hx``, ``hy`` and ``gain`` are belts (`physics.rows`).
     """
     if constants.linear_depth > 0.0:
         return
-    fill_centre_edges(gain, constants.periodic_x)
-    rows, columns = u.shape
-    for j in range(2, rows - 2):
-        for n in range(columns - 4):
+    nx = u.shape[1] - 4
+    for j in range(first, end):
+        here, south = place(j, gain.shape[0]), place(j - 1, gain.shape[0])
+        gain[here, 1] = gain[here, nx + 1] if constants.periodic_x else gain[here, 2]
+        for n in range(nx):
             i = n + 2
-            u[j, i] /= 1.0 + 0.5 * (gain[j, i] + gain[j, i - 1]) / hx[j, i]
-            v[j, i] /= 1.0 + 0.5 * (gain[j, i] + gain[j - 1, i]) / hy[j, i]
-    fill_x_face_edges(u, constants.periodic_x, constants.tangential_sign)
-    fill_y_face_edges(v, constants.periodic_x, constants.tangential_sign)
+            u[j, i] /= 1.0 + 0.5 * (gain[here, i] + gain[here, i - 1]) / hx[here, i]
+        if j > 2:  # on the southern wall there is no v, and no gain south of it
+            for n in range(nx):
+                i = n + 2
+                v[j, i] /= 1.0 + 0.5 * (gain[here, i] + gain[south, i]) / hy[here, i]

@@ -8,6 +8,9 @@ from oceanbox.compiling import kernel
 
 __all__ = ["limited_face_value"]
 
+# A product where the compiler may not turn a quotient into one.
+THIRD = 1.0 / 3.0
+
 
 @kernel
 def limited_face_value(far: float, upstream: float, downstream: float, courant: float) -> float:
@@ -20,6 +23,6 @@ def limited_face_value(far: float, upstream: float, downstream: float, courant: 
     behind = upstream - far
     ahead = downstream - upstream
     sign = 1.0 if ahead > 0.0 else -1.0
-    third = sign * (ahead + 2.0 * behind) / 3.0
+    third = sign * (ahead + 2.0 * behind) * THIRD
     slope = sign * max(0.0, min(min(2.0 * sign * behind, third), 2.0 * sign * ahead))
     return upstream + 0.5 * (1.0 - courant) * slope

@@ -1,24 +1,37 @@
-"""Heat and salt: advection by the very transports that move the water, and lateral mixing."""
+"""Heat and salt: advection by the very transports that move the water, and lateral mixing.
+
+Rows ``first`` to ``end`` - 1 are worked on; belts are explained in `physics.rows`.
+"""
 
 import numpy as np
 from numpy.typing import NDArray
 
 from oceanbox.compiling import kernel
 from oceanbox.physics.limiter import limited_face_value
+from oceanbox.physics.rows import place
 from oceanbox.physics.state import Constants
 
-__all__ = ["concentration", "mixing_flux", "tracer_flux", "transport_step"]
+__all__ = ["concentration", "per_thickness", "tracer_flux", "transport_step"]
 
 Array = NDArray[np.float64]
 
 
 @kernel
-def concentration(h: Array, content: Array, c: Array) -> None:
-    """Theta = (h Theta)/h in every cell, ghost cells included."""
-    rows, columns = h.shape
-    for j in range(rows):
-        for i in range(columns):
-            c[j, i] = content[j, i] / h[j, i]
+def per_thickness(first: int, end: int, h: Array, per_h: Array) -> None:
+    """1/h in every cell, m-1, ghost cells included; ``h`` (ny+4, nx+4), ``per_h`` a belt."""
+    for j in range(first, end):
+        here = place(j, per_h.shape[0])
+        for i in range(h.shape[1]):
+            per_h[here, i] = 1.0 / h[j, i]
+
+
+@kernel
+def concentration(first: int, end: int, per_h: Array, content: Array, c: Array) -> None:
+    """Theta = (h Theta)/h in every cell, ghost cells included; ``content`` (ny+4, nx+4), the others belts."""
+    for j in range(first, end):
+        here = place(j, c.shape[0])
+        for i in range(content.shape[1]):
+            c[here, i] = content[j, i] * per_h[here, i]
 
 
 @kernel
@@ -30,59 +43,82 @@ def carried(far: float, up: float, down: float, share: float, centred: bool) -> 
 
 
 @kernel
-def tracer_flux(h: Array, c: Array, U: Array, V: Array, dt: float, constants: Constants, Fx: Array, Fy: Array) -> None:
-    """F = U c on x faces and V c on y faces; c flux-limited, Courant-corrected for a forward step of ``dt``.
-
-    ``dt = 0`` gives the instantaneous flux that a multi-stage scheme needs.  A forward step makes no new extremum where the
-    shares s of a cell's water that leave through its faces have sum s (2 - s) <= 1, for which it is enough that at most half of
-    it leaves; a uniform c stays uniform in any flow because water and tracer move together.
-    """
-    rows, columns = c.shape
-    dt_dx = dt / constants.dx
-    dt_dy = dt / constants.dy
-    centred = constants.centred_tracers
-    for j in range(2, rows - 2):
-        for n in range(columns - 3):
-            i = n + 2
-            flow = U[j, i]
-            if flow > 0.0:
-                share = flow * dt_dx / h[j, i - 1]
-                Fx[j, i] = flow * carried(c[j, i - 2], c[j, i - 1], c[j, i], share, centred)
-            else:
-                share = -flow * dt_dx / h[j, i]
-                Fx[j, i] = flow * carried(c[j, i + 1], c[j, i], c[j, i - 1], share, centred)
-    for j in range(2, rows - 1):
-        for n in range(columns - 4):
-            i = n + 2
-            flow = V[j, i]
-            if flow > 0.0:
-                share = flow * dt_dy / h[j - 1, i]
-                Fy[j, i] = flow * carried(c[j - 2, i], c[j - 1, i], c[j, i], share, centred)
-            else:
-                share = -flow * dt_dy / h[j, i]
-                Fy[j, i] = flow * carried(c[j + 1, i], c[j, i], c[j - 1, i], share, centred)
+def face_flux(
+    flow: float, dt_per_width: float, per_behind: float, per_beyond: float,
+    far_behind: float, behind: float, beyond: float, far_beyond: float, centred: bool,
+) -> float:  # fmt: skip
+    """``flow`` times the value it carries: of two cells on either side of the face, the ones it comes from decide."""
+    forward = flow > 0.0
+    share = abs(flow) * dt_per_width * (per_behind if forward else per_beyond)
+    far = far_behind if forward else far_beyond
+    up = behind if forward else beyond
+    down = beyond if forward else behind
+    return flow * carried(far, up, down, share, centred)
 
 
 @kernel
-def mixing_flux(h: Array, c: Array, constants: Constants, Fx: Array, Fy: Array) -> None:
-    """F = -kappa_h <h> c_x on x faces, -kappa_h <h> c_y on y faces; none through a wall."""
-    rows, columns = c.shape
+def tracer_flux(
+    first: int, end: int, h: Array, per_h: Array, c: Array, U: Array, V: Array, dt: float, booked: float,
+    constants: Constants, advected_x: Array, advected_y: Array, mixed_x: Array, mixed_y: Array, Fx: Array, Fy: Array,
+) -> None:  # fmt: skip
+    """F = U c - kappa_h <h> c_x on x faces and V c - kappa_h <h> c_y on y faces; both parts booked over ``booked`` seconds.
+
+    c is flux-limited and Courant-corrected for a forward step of ``dt``; ``dt = 0`` gives the instantaneous flux that a
+    multi-stage scheme needs.  A forward step makes no new extremum where the shares s of a cell's water that leave through its
+    faces have sum s (2 - s) <= 1, for which it is enough that at most half of it leaves; a uniform c stays uniform in any flow
+    because water and tracer move together.  Nothing mixes through a wall.
+
+    ``h`` and the books (ny+4, nx+4), all else belts.  The rows are those of the y faces, the northern wall included.
+    """
+    rows, columns = h.shape
+    dt_dx = dt / constants.dx
+    dt_dy = dt / constants.dy
     across_x = 0.5 * constants.diffusivity / constants.dx
     across_y = 0.5 * constants.diffusivity / constants.dy
-    for j in range(2, rows - 1):
+    centred = constants.centred_tracers
+    belt = c.shape[0]
+    for j in range(first, min(end, rows - 2)):
+        here = place(j, belt)
         for n in range(columns - 3):
             i = n + 2
-            Fx[j, i] = -across_x * (h[j, i - 1] + h[j, i]) * (c[j, i] - c[j, i - 1])
-            Fy[j, i] = -across_y * (h[j - 1, i] + h[j, i]) * (c[j, i] - c[j - 1, i])
+            west, east = c[here, i - 1], c[here, i]
+            moved = face_flux(
+                U[here, i],
+                dt_dx,
+                per_h[here, i - 1],
+                per_h[here, i],
+                c[here, i - 2],
+                west,
+                east,
+                c[here, i + 1],
+                centred,
+            )
+            mixed = -across_x * (h[j, i - 1] + h[j, i]) * (east - west)
+            advected_x[j, i] += booked * moved
+            mixed_x[j, i] += booked * mixed
+            Fx[here, i] = moved + mixed
+    for j in range(first, end):
+        farther, behind, here, beyond = place(j - 2, belt), place(j - 1, belt), place(j, belt), place(j + 1, belt)
+        for n in range(columns - 4):
+            i = n + 2
+            south, north = c[behind, i], c[here, i]
+            moved = face_flux(
+                V[here, i], dt_dy, per_h[behind, i], per_h[here, i], c[farther, i], south, north, c[beyond, i], centred
+            )
+            mixed = -across_y * (h[j - 1, i] + h[j, i]) * (north - south)
+            advected_y[j, i] += booked * moved
+            mixed_y[j, i] += booked * mixed
+            Fy[here, i] = moved + mixed
 
 
 @kernel
-def transport_step(content: Array, Fx: Array, Fy: Array, dt: float, constants: Constants) -> None:
-    """content -= dt (F_x + F_y) in interior cells: water (F = U, V), heat or salt."""
-    rows, columns = content.shape
+def transport_step(first: int, end: int, content: Array, Fx: Array, Fy: Array, dt: float, constants: Constants) -> None:
+    """content -= dt (F_x + F_y) in interior cells: water (F = U, V), heat or salt; ``content`` (ny+4, nx+4), F belts."""
+    columns = content.shape[1]
     dt_dx = dt / constants.dx
     dt_dy = dt / constants.dy
-    for j in range(2, rows - 2):
+    for j in range(first, end):
+        here, north = place(j, Fx.shape[0]), place(j + 1, Fx.shape[0])
         for n in range(columns - 4):
             i = n + 2
-            content[j, i] -= dt_dx * (Fx[j, i + 1] - Fx[j, i]) + dt_dy * (Fy[j + 1, i] - Fy[j, i])
+            content[j, i] -= dt_dx * (Fx[here, i + 1] - Fx[here, i]) + dt_dy * (Fy[north, i] - Fy[here, i])

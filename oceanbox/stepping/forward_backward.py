@@ -11,19 +11,26 @@ One step from n to n+1, ring index of the memory = step count modulo 3:
 5. planetary rotation in turn: u^{n+1} from v^n, then v^{n+1} from u^{n+1}, neutral for f dt < 2.
 
 Weights: ``stepping.weights``; limits: ``stepping.limits``.
+
+The basin is swept once a step, from south to north in bands of rows.  Each part of the step follows as many rows behind the
+front of the band as its neighbours to the north and the part before it need (`open_band` 0, `move_band` 1 and 2,
+`exchange_band` and `close_band` 3), so that a row is finished while it is still in the processor's cache.  Each row is worked
+out from the same numbers whatever the height of the bands: results do not depend on it.
 """
 
 import numpy as np
 from numpy.typing import NDArray
 
-from oceanbox.compiling import kernel
+from oceanbox.compiling import kernel, part
 from oceanbox.grid.edges import fill_centre_edges, fill_x_face_edges, fill_y_face_edges
-from oceanbox.physics.buoyancy import layer_buoyancy
-from oceanbox.physics.continuity import keep_thickness_positive, mean_thickness, volume_transport
+from oceanbox.physics.continuity import limit_outflow, mean_thickness, outflow_share, transport_x, transport_y
+from oceanbox.physics.entrainment import mixed_layer_transport
 from oceanbox.physics.exchange import dilute_momentum, exchange
-from oceanbox.physics.momentum import advection, friction, planetary_x, planetary_y, pressure_force, wind_acceleration
+from oceanbox.physics.momentum import advection, corner_terms, friction, kinetic_energy, planetary_x, planetary_y
+from oceanbox.physics.pressure import layer_pressure, pressure_force_x, pressure_force_y
+from oceanbox.physics.rows import place, window
 from oceanbox.physics.state import Constants, Forcing, Ledger, State
-from oceanbox.physics.tracers import concentration, mixing_flux, tracer_flux, transport_step
+from oceanbox.physics.tracers import concentration, per_thickness, tracer_flux, transport_step
 from oceanbox.stepping.booking import book
 from oceanbox.stepping.memory import Memory, Workspace
 from oceanbox.stepping.weights import advection_weights, pressure_weights, transport_weights
@@ -42,124 +49,226 @@ def wind_fraction(time: float, constants: Constants) -> float:
 
 
 @kernel
-def weigh_transports(now: Array, before: Array, earlier: Array, weights: tuple[float, float, float], F: Array) -> None:
-    """F = w0 U^n + w1 U^{n-1} + w2 U^{n-2} on all faces."""
+def weigh_transports(
+    first: int, end: int, now: Array, before: Array, earlier: Array, weights: tuple[float, float, float], F: Array
+) -> None:
+    """F = w0 U^n + w1 U^{n-1} + w2 U^{n-2}; transports (ny+4, nx+4), ``F`` a belt."""
     w0, w1, w2 = weights
-    rows, columns = F.shape
-    for j in range(rows):
-        for i in range(columns):
-            F[j, i] = w0 * now[j, i] + w1 * before[j, i] + w2 * earlier[j, i]
+    for j in range(first, end):
+        here = place(j, F.shape[0])
+        for i in range(F.shape[1]):
+            F[here, i] = w0 * now[j, i] + w1 * before[j, i] + w2 * earlier[j, i]
 
 
-@kernel
-def move_tracer(
-    h: Array, content: Array, work: Workspace, k: int, dt: float, constants: Constants,
-    advection_x: Array, advection_y: Array, mixing_x: Array, mixing_y: Array,
+@part
+def open_band(
+    band: int, height: int, k: int, state: State, memory: Memory, forcing: Forcing, constants: Constants, work: Workspace,
+    slots: tuple[int, int, int], history: int,
 ) -> None:  # fmt: skip
-    """Advection and lateral mixing of one content of one layer, both from the field before the step, both booked."""
-    tx, ty = work.tracer_x, work.tracer_y
-    concentration(h, content, work.concentration)
-    tracer_flux(h, work.concentration, work.flux_x[k], work.flux_y[k], dt, constants, tx, ty)
-    book(advection_x, advection_y, tx, ty, dt)
-    transport_step(content, tx, ty, dt, constants)
-    if constants.diffusivity > 0.0:
-        mixing_flux(h, work.concentration, constants, tx, ty)
-        book(mixing_x, mixing_y, tx, ty, dt)
-        transport_step(content, tx, ty, dt, constants)
-
-
-@kernel
-def move_water(
-    state: State, memory: Memory, constants: Constants, ledger: Ledger, work: Workspace,
-    now: int, before: int, earlier: int, history: int, dt: float,
-) -> None:  # fmt: skip
-    """Steps 1 and 2 for every layer: volume, heat and salt move with the weighted transports, all booked."""
-    h, heat, salt, u, v = state
+    """What the old state of layer ``k`` says about the rows of a band: step 1, vorticity, kinetic energy, friction, rotation."""
+    h, u, v = state.thickness[k], state.velocity_x[k], state.velocity_y[k]
+    now, before, earlier = slots
+    hx, hy = work.thickness_x[k], work.thickness_y[k]
     tx, ty = memory.transport_x, memory.transport_y
+    rows = h.shape[0]
+
+    first, end = window(band, height, 0, 0, rows)
+    per_thickness(first, end, h, work.per_thickness[k])
+    concentration(first, end, work.per_thickness[k], state.heat[k], work.temperature[k])
+    if constants.salty:
+        concentration(first, end, work.per_thickness[k], state.salt[k], work.salinity[k])
+    first, end = window(band, height, 0, 1, rows)
+    mean_thickness(first, end, h, constants, hx, hy)
+
+    first, end = window(band, height, 0, 2, rows - 1)
     weights = transport_weights(history)
-    for k in range(h.shape[0]):
-        volume_transport(h[k], work.thickness_x[k], work.thickness_y[k], u[k], v[k], constants, tx[now, k], ty[now, k])
-        fx, fy = work.flux_x[k], work.flux_y[k]
-        weigh_transports(tx[now, k], tx[before, k], tx[earlier, k], weights, fx)
-        weigh_transports(ty[now, k], ty[before, k], ty[earlier, k], weights, fy)
-        ledger.limited_faces[0] += keep_thickness_positive(h[k], fx, fy, dt, constants, work.share)
-        move_tracer(
-            h[k], heat[k], work, k, dt, constants, ledger.heat_advection_x[k], ledger.heat_advection_y[k],
-            ledger.heat_mixing_x[k], ledger.heat_mixing_y[k],
+    transport_x(first, end, h, hx, u, constants, tx[now, k])
+    transport_y(first, end, h, hy, v, constants, ty[now, k])
+    weigh_transports(first, end, tx[now, k], tx[before, k], tx[earlier, k], weights, work.flux_x[k])
+    weigh_transports(first, end, ty[now, k], ty[before, k], ty[earlier, k], weights, work.flux_y[k])
+    if constants.momentum_advection:
+        corner_terms(
+            first, end, hx, u, v, ty[now, k], forcing.coriolis, constants, work.vorticity[k], work.turned[k]
         )  # fmt: skip
-        if constants.salty:
-            move_tracer(
-                h[k], salt[k], work, k, dt, constants, ledger.salt_advection_x[k], ledger.salt_advection_y[k],
-                ledger.salt_mixing_x[k], ledger.salt_mixing_y[k],
-            )  # fmt: skip
-        book(ledger.volume_x[k], ledger.volume_y[k], fx, fy, dt)
-        transport_step(h[k], fx, fy, dt, constants)
+        first, end = window(band, height, 0, 1, rows - 1)
+        kinetic_energy(first, end, u, v, work.kinetic[k])
+
+    first, end = window(band, height, 1, 2, rows - 2)
+    friction(first, end, u, hx, constants, work.force_x[k])
+    friction(first, end, v, hy, constants, work.force_y[k])
+    planetary_x(first, end, hx, work.turned[k], ty[now, k], forcing.coriolis, constants, work.force_x[k])
+    if constants.momentum_advection:
+        advection(
+            first, end, work.vorticity[k], work.kinetic[k], tx[now, k], ty[now, k], constants,
+            memory.advection_x[now, k], memory.advection_y[now, k],
+        )  # fmt: skip
 
 
-@kernel
-def fill_layer_edges(state: State, work: Workspace, constants: Constants) -> None:
-    """Ghost cells of the contents, buoyancy everywhere, thickness on faces."""
-    h, heat, salt, _, _ = state
-    for k in range(h.shape[0]):
-        fill_centre_edges(h[k], constants.periodic_x)
-        fill_centre_edges(heat[k], constants.periodic_x)
-        fill_centre_edges(salt[k], constants.periodic_x)
-        layer_buoyancy(h[k], heat[k], salt[k], constants, work.buoyancy[k])
-        mean_thickness(h[k], constants, work.thickness_x[k], work.thickness_y[k])
+@part
+def move_band(
+    band: int, height: int, k: int, crowded: int, state: State, constants: Constants, ledger: Ledger, work: Workspace,
+    dt: float,
+) -> int:  # fmt: skip
+    """Step 2 for layer ``k``: volume, heat and salt move with the weighted transports, all booked.
+
+    ``crowded`` counts the cells of the band before that would lose too much water; returns the same of this one.
+    """
+    h, heat, salt = state.thickness[k], state.heat[k], state.salt[k]
+    fx, fy, per_h = work.flux_x[k], work.flux_y[k], work.per_thickness[k]
+    rows = h.shape[0]
+
+    first, end = window(band, height, 1, 2, rows - 2)
+    crowded_now = outflow_share(first, end, per_h, fx, fy, dt, constants, work.share[k])
+    if crowded + crowded_now > 0:
+        ledger.limited_faces[0] += limit_outflow(first, end, rows, fx, fy, work.share[k])
+    first, end = window(band, height, 1, 2, rows - 1)
+    book(first, end, ledger.volume_x[k], ledger.volume_y[k], fx, fy, dt)
+    tracer_flux(
+        first, end, h, per_h, work.temperature[k], fx, fy, dt, dt, constants, ledger.heat_advection_x[k],
+        ledger.heat_advection_y[k], ledger.heat_mixing_x[k], ledger.heat_mixing_y[k], work.tracer_x[k], work.tracer_y[k],
+    )  # fmt: skip
+    if constants.salty:
+        tracer_flux(
+            first, end, h, per_h, work.salinity[k], fx, fy, dt, dt, constants, ledger.salt_advection_x[k],
+            ledger.salt_advection_y[k], ledger.salt_mixing_x[k], ledger.salt_mixing_y[k], work.salt_x[k], work.salt_y[k],
+        )  # fmt: skip
+
+    first, end = window(band, height, 2, 2, rows - 2)
+    transport_step(first, end, h, fx, fy, dt, constants)
+    transport_step(first, end, heat, work.tracer_x[k], work.tracer_y[k], dt, constants)
+    fill_centre_edges(first, end, h, constants.periodic_x)
+    if constants.salty:
+        transport_step(first, end, salt, work.salt_x[k], work.salt_y[k], dt, constants)
+    return crowded_now
+
+
+@part
+def exchange_band(
+    band: int, height: int, state: State, forcing: Forcing, constants: Constants, ledger: Ledger, work: Workspace,
+    wind: float, owed: float,
+) -> None:  # fmt: skip
+    """Step 3: the columns of the top layer exchange with air and abyss over ``owed`` seconds."""
+    h, heat, salt, u, v = state
+    rows = h.shape[1]
+    Mx, My = work.mixed_x[0], work.mixed_y[0]
+    if constants.mixed_depth > 0.0:
+        first, end = window(band, height, 2, 2, rows - 1)
+        mixed_layer_transport(
+            first, end, h[0], u[0], v[0], forcing.shear_x, forcing.shear_y, wind, constants, Mx, My
+        )  # fmt: skip
+    first, end = window(band, height, 3, 2, rows - 2)
+    exchange(
+        first, end, h[0], heat[0], salt[0], forcing, constants, owed, ledger, Mx, My, work.gain[0], work.heating[0]
+    )
 
 
 @kernel
 def update_velocity(
-    u: Array, force: Array, advection_now: Array, advection_before: Array, advection_earlier: Array,
+    first: int, end: int, u: Array, force: Array, advection_now: Array, advection_before: Array, advection_earlier: Array,
     pressure_next: Array, pressure_now: Array, pressure_before: Array, pressure_earlier: Array,
-    drag: Array, history: int, dt: float,
+    thickness: Array, stress: Array, wind: float, drag: Array, history: int, dt: float,
 ) -> None:  # fmt: skip
-    """u^{n+1} = (u^n + dt [weighted terms + force])/(1 + dt r); the oldest pressure slot then takes the newest force."""
+    """u^{n+1} = (u^n + dt [weighted terms + force + wind tau/(rho0 h)])/(1 + dt r), written with one division.
+
+    The oldest pressure slot then takes the newest force.  ``force``, ``pressure_next`` and ``thickness`` are belts.
+    """
     a0, a1, a2 = advection_weights(history)
     p0, p1, p2, p3 = pressure_weights(history)
-    rows, columns = u.shape
-    for j in range(2, rows - 2):
-        for n in range(columns - 4):
+    for j in range(first, end):
+        here = place(j, force.shape[0])
+        for n in range(u.shape[1] - 4):
             i = n + 2
             total = a0 * advection_now[j, i] + a1 * advection_before[j, i] + a2 * advection_earlier[j, i]
-            total += p0 * pressure_next[j, i] + p1 * pressure_now[j, i]
-            total += p2 * pressure_before[j, i] + p3 * pressure_earlier[j, i] + force[j, i]
-            pressure_earlier[j, i] = pressure_next[j, i]
-            u[j, i] = (u[j, i] + dt * total) / (1.0 + dt * drag[j, i])
+            total += p0 * pressure_next[here, i] + p1 * pressure_now[j, i]
+            total += p2 * pressure_before[j, i] + p3 * pressure_earlier[j, i] + force[here, i]
+            pressure_earlier[j, i] = pressure_next[here, i]
+            h = thickness[here, i]
+            u[j, i] = ((u[j, i] + dt * total) * h + dt * wind * stress[j, i]) / (h * (1.0 + dt * drag[j, i]))
 
 
 @kernel
-def push_velocity(
-    state: State, memory: Memory, forcing: Forcing, constants: Constants, work: Workspace,
-    now: int, before: int, earlier: int, history: int, wind: float, dt: float,
+def fill_velocity_edges(first: int, end: int, u: Array, v: Array, constants: Constants) -> None:
+    """Ghost cells of both velocities."""
+    fill_x_face_edges(first, end, u, constants.periodic_x, constants.tangential_sign)
+    fill_y_face_edges(first, end, v, constants.periodic_x, constants.tangential_sign)
+
+
+@part
+def push_band(
+    first: int, end: int, k: int, state: State, memory: Memory, forcing: Forcing, constants: Constants, work: Workspace,
+    slots: tuple[int, int, int], history: int, wind: float, dt: float,
 ) -> None:  # fmt: skip
-    """Steps 4 and 5 for every layer; ``wind`` is the fraction of the stress that acts, on the top layer alone."""
-    h, _, _, u, v = state
+    """Steps 4 and 5 for layer ``k``; ``wind`` is the fraction of the stress that acts on it."""
+    h, u, v = state.thickness[k], state.velocity_x[k], state.velocity_y[k]
+    now, before, earlier = slots
     ax, ay = memory.advection_x, memory.advection_y
     px, py = memory.pressure_x, memory.pressure_y
-    sign, periodic = constants.tangential_sign, constants.periodic_x
-    for k in range(u.shape[0]):
-        hx, hy = work.thickness_x[k], work.thickness_y[k]
-        force_x, force_y = work.force_x[k], work.force_y[k]
-        # force_x already holds the planetary rotation by v^n.  Pressure slots: 'before' n, 'earlier' n-1, 'now' n-2.
-        friction(u[k], hx, constants, force_x)
-        if k == 0:
-            wind_acceleration(forcing.wind_x, hx, wind, force_x)
-        update_velocity(
-            u[k], force_x, ax[now, k], ax[before, k], ax[earlier, k],
-            work.pressure_x[k], px[before, k], px[earlier, k], px[now, k], forcing.drag_x, history, dt,
-        )  # fmt: skip
-        fill_x_face_edges(u[k], periodic, sign)
-        volume_transport(h[k], hx, hy, u[k], v[k], constants, work.flux_x[k], work.flux_y[k])
-        planetary_y(hx, hy, work.flux_x[k], forcing.coriolis, constants, force_y)
-        friction(v[k], hy, constants, force_y)
-        if k == 0:
-            wind_acceleration(forcing.wind_y, hy, wind, force_y)
-        update_velocity(
-            v[k], force_y, ay[now, k], ay[before, k], ay[earlier, k],
-            work.pressure_y[k], py[before, k], py[earlier, k], py[now, k], forcing.drag_y, history, dt,
-        )  # fmt: skip
-        fill_y_face_edges(v[k], periodic, sign)
+    hx, hy, U = work.later_thickness_x[k], work.later_thickness_y[k], work.later_transport_x[k]
+    b, P, d = work.buoyancy[k], work.pressure[k], work.depth[k]
+    # Pressure slots: 'before' n, 'earlier' n-1, 'now' n-2.
+    pressure_force_x(first, end, b, P, d, constants, work.pressure_x[k])
+    update_velocity(
+        first, end, u, work.force_x[k], ax[now, k], ax[before, k], ax[earlier, k],
+        work.pressure_x[k], px[before, k], px[earlier, k], px[now, k], hx, forcing.wind_x, wind, forcing.drag_x, history, dt,
+    )  # fmt: skip
+    fill_x_face_edges(first, end, u, constants.periodic_x, constants.tangential_sign)
+    transport_x(first, end, h, hx, u, constants, U)
+    # On the southern wall there is no v.
+    south = max(first, 3)
+    pressure_force_y(south, end, b, P, d, constants, work.pressure_y[k])
+    planetary_y(south, end, hx, hy, U, forcing.coriolis, constants, work.later_turned[k], work.force_y[k])
+    update_velocity(
+        south, end, v, work.force_y[k], ay[now, k], ay[before, k], ay[earlier, k],
+        work.pressure_y[k], py[before, k], py[earlier, k], py[now, k], hy, forcing.wind_y, wind, forcing.drag_y, history, dt,
+    )  # fmt: skip
+    fill_y_face_edges(first, end, v, constants.periodic_x, constants.tangential_sign)
+
+
+@part
+def close_band(
+    band: int, height: int, state: State, memory: Memory, forcing: Forcing, constants: Constants, work: Workspace,
+    slots: tuple[int, int, int], history: int, wind: float, dt: float,
+) -> None:  # fmt: skip
+    """Steps 4 and 5 for all layers, from the new thickness, heat and salt of the rows."""
+    h, heat, salt, _, _ = state
+    first, end = window(band, height, 3, 2, h.shape[1] - 2)
+    for k in range(h.shape[0]):
+        fill_centre_edges(first, end, h[k], constants.periodic_x)
+        fill_centre_edges(first, end, heat[k], constants.periodic_x)
+        if constants.salty:
+            fill_centre_edges(first, end, salt[k], constants.periodic_x)
+        mean_thickness(first, end, h[k], constants, work.later_thickness_x[k], work.later_thickness_y[k])
+    layer_pressure(first, end, h, heat, salt, constants, work.buoyancy, work.pressure, work.depth)
+    for k in range(h.shape[0]):
+        acting = wind if k == 0 else 0.0
+        push_band(first, end, k, state, memory, forcing, constants, work, slots, history, acting, dt)
+
+
+@part
+def dilute_band(band: int, height: int, state: State, constants: Constants, work: Workspace) -> None:
+    """What was entrained came in at rest."""
+    u, v = state.velocity_x[0], state.velocity_y[0]
+    first, end = window(band, height, 3, 2, u.shape[0] - 2)
+    dilute_momentum(
+        first, end, u, v, work.later_thickness_x[0], work.later_thickness_y[0], work.gain[0], constants
+    )  # fmt: skip
+    fill_velocity_edges(first, end, u, v, constants)
+
+
+@kernel
+def fill_edges(state: State, constants: Constants) -> None:
+    """Ghost cells of all five fields."""
+    h, heat, salt, u, v = state
+    end = h.shape[1] - 2
+    for k in range(h.shape[0]):
+        fill_centre_edges(2, end, h[k], constants.periodic_x)
+        fill_centre_edges(2, end, heat[k], constants.periodic_x)
+        fill_centre_edges(2, end, salt[k], constants.periodic_x)
+        fill_velocity_edges(2, end, u[k], v[k], constants)
+
+
+# Rows of a belt that are still needed when a band begins.
+ROWS_BEHIND = 3
 
 
 @kernel
@@ -183,34 +292,26 @@ def advance_forward_backward(
     behind us (it selects the starting weights), ``start_time`` [s] is the model time of the state.  Columns exchange after
     every ``exchange_every`` steps and after the last one, over the time since they last did: no time is owed at the end.
     """
-    h, heat, salt, u, v = state
-    fill_layer_edges(state, work, constants)
+    layers, rows, _ = state.thickness.shape
+    height = work.share.shape[1] - ROWS_BEHIND
+    fill_edges(state, constants)
     owed = 0
     for n in range(steps):
-        now = (steps_done + n) % 3
-        before = (steps_done + n + 2) % 3
-        earlier = (steps_done + n + 1) % 3
+        slots = ((steps_done + n) % 3, (steps_done + n + 2) % 3, (steps_done + n + 1) % 3)
         wind = wind_fraction(start_time + (n + 0.5) * dt, constants)
-        move_water(state, memory, constants, ledger, work, now, before, earlier, history + n, dt)
-        tx, ty = memory.transport_x, memory.transport_y
-        for k in range(h.shape[0]):
-            hx = work.thickness_x[k]
-            planetary_x(hx, ty[now, k], forcing.coriolis, constants, work.force_x[k])
-            if constants.momentum_advection:
-                advection(
-                    hx, u[k], v[k], tx[now, k], ty[now, k], constants, work.vorticity, work.kinetic,
-                    memory.advection_x[now, k], memory.advection_y[now, k],
-                )  # fmt: skip
         owed += 1
         exchanging = owed == exchange_every or n == steps - 1
+        crowded = 0
+        for band in range(0, rows + 1, height):
+            crowded_now = 0
+            for k in range(layers):
+                open_band(band, height, k, state, memory, forcing, constants, work, slots, history + n)
+                crowded_now += move_band(band, height, k, crowded, state, constants, ledger, work, dt)
+            crowded = crowded_now
+            if exchanging:
+                exchange_band(band, height, state, forcing, constants, ledger, work, wind, owed * dt)
+            close_band(band, height, state, memory, forcing, constants, work, slots, history + n, wind, dt)
+            if exchanging:
+                dilute_band(band, height, state, constants, work)
         if exchanging:
-            exchange(
-                h[0], heat[0], salt[0], u[0], v[0], forcing, constants, wind, owed * dt, ledger,
-                work.mixed_x, work.mixed_y, work.gain[0],
-            )  # fmt: skip
-        fill_layer_edges(state, work, constants)
-        pressure_force(h, work.buoyancy, constants, work.layer_pair, work.pressure_x, work.pressure_y)
-        push_velocity(state, memory, forcing, constants, work, now, before, earlier, history + n, wind, dt)
-        if exchanging:
-            dilute_momentum(u[0], v[0], work.thickness_x[0], work.thickness_y[0], work.gain[0], constants)
             owed = 0

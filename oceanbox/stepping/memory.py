@@ -7,7 +7,7 @@ from numpy.typing import NDArray
 
 from oceanbox.grid import Grid
 
-__all__ = ["Memory", "Workspace", "empty_memory", "empty_workspace"]
+__all__ = ["Memory", "Workspace", "belt_rows", "empty_memory", "empty_workspace"]
 
 Array = NDArray[np.float64]
 
@@ -24,27 +24,52 @@ class Memory(NamedTuple):
 
 
 class Workspace(NamedTuple):
-    """Scratch arrays, never carried from one step to the next.  (L, ny+4, nx+4) or (ny+4, nx+4)."""
+    """Scratch belts (`physics.rows`), never carried from one step to the next.  Each (L, B, nx+4)."""
 
-    flux_x: Array  # (L,...) transport used for this step
+    per_thickness: Array  # 1/h before the step
+    temperature: Array  # Theta before the step
+    salinity: Array  # Sigma before the step
+    thickness_x: Array  # h on x faces, before the step
+    thickness_y: Array
+    flux_x: Array  # transport that moves the water in this step
     flux_y: Array
-    tracer_x: Array  # (...) flux of heat or salt through x faces
+    share: Array  # outflow share
+    tracer_x: Array  # flux of heat or salt
     tracer_y: Array
-    concentration: Array  # (...) Theta or Sigma
-    buoyancy: Array  # (L,...)
-    layer_pair: Array  # (2,...) for the pressure force
-    vorticity: Array  # (...) q at corners
-    kinetic: Array  # (...)
-    mixed_x: Array  # (...) mixed-layer transport
-    mixed_y: Array
-    gain: Array  # (L,...) water entrained in the step
-    share: Array  # (...) outflow share
-    force_x: Array  # (L,...) the forces of this step
+    salt_x: Array
+    salt_y: Array
+    vorticity: Array  # q at corners
+    turned: Array  # f <V>/<h> at corners
+    kinetic: Array
+    force_x: Array  # friction and rotation
     force_y: Array
-    pressure_x: Array  # (L,...) the newest pressure force
+    mixed_x: Array  # mixed-layer transport
+    mixed_y: Array
+    gain: Array  # water entrained in the step
+    heating: Array  # heat the surface gives
+    later_thickness_x: Array  # h on x faces, after the water has moved
+    later_thickness_y: Array
+    buoyancy: Array
+    pressure: Array  # P and d of the pressure force
+    depth: Array
+    pressure_x: Array  # the newest pressure force
     pressure_y: Array
-    thickness_x: Array  # (L,...) h on x faces
-    thickness_y: Array  # (L,...) h on y faces
+    later_transport_x: Array  # U of the new u
+    later_turned: Array  # f <U>/<h> at corners
+
+
+# Belts should stay in cache, but a sweep in few bands starts fewer loops: measured, twice a core's own cache is best.
+BELT_BYTES = 2 * 2**20
+FEWEST_BELT_ROWS, MOST_BELT_ROWS = 8, 128
+
+
+def belt_rows(columns: int, layers: int) -> int:
+    """Places of a belt, a power of two: as many as fit the cache.  Results do not depend on it."""
+    a_row = 8 * columns * layers * len(Workspace._fields)
+    rows = MOST_BELT_ROWS
+    while rows > FEWEST_BELT_ROWS and rows * a_row > BELT_BYTES:
+        rows //= 2
+    return rows
 
 
 def empty_memory(grid: Grid, layers: int) -> Memory:
@@ -52,10 +77,6 @@ def empty_memory(grid: Grid, layers: int) -> Memory:
     return Memory(*(np.zeros((3, layers, *grid.shape)) for _ in Memory._fields))
 
 
-def empty_workspace(grid: Grid, layers: int) -> Workspace:
-    """Scratch arrays at zero."""
-    deep, flat = (layers, *grid.shape), grid.shape
-    pair = (2, *grid.shape)
-    flat_fields = {"tracer_x", "tracer_y", "concentration", "vorticity", "kinetic", "mixed_x", "mixed_y", "share"}
-    shapes = dict.fromkeys(Workspace._fields, deep) | dict.fromkeys(flat_fields, flat) | {"layer_pair": pair}
-    return Workspace(*(np.zeros(shapes[name]) for name in Workspace._fields))
+def empty_workspace(grid: Grid, layers: int, rows: int) -> Workspace:
+    """Belts at zero, with ``rows`` places: a power of two, or at least as many as the grid has rows."""
+    return Workspace(*(np.zeros((layers, rows, grid.shape[1])) for _ in Workspace._fields))

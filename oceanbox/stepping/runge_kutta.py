@@ -15,15 +15,24 @@ from numpy.typing import NDArray
 
 from oceanbox.compiling import kernel
 from oceanbox.grid import Grid
-from oceanbox.grid.edges import fill_centre_edges, fill_x_face_edges, fill_y_face_edges
-from oceanbox.physics.buoyancy import layer_buoyancy
-from oceanbox.physics.continuity import keep_thickness_positive, mean_thickness, volume_transport
+from oceanbox.grid.edges import fill_centre_edges
+from oceanbox.physics.continuity import limit_outflow, mean_thickness, outflow_share, transport_x, transport_y
+from oceanbox.physics.entrainment import mixed_layer_transport
 from oceanbox.physics.exchange import dilute_momentum, exchange
-from oceanbox.physics.momentum import advection, friction, planetary_x, planetary_y, pressure_force, wind_acceleration
+from oceanbox.physics.momentum import (
+    advection,
+    corner_terms,
+    friction,
+    kinetic_energy,
+    planetary_x,
+    planetary_y,
+    wind_acceleration,
+)
+from oceanbox.physics.pressure import layer_pressure, pressure_force_x, pressure_force_y
 from oceanbox.physics.state import Constants, Forcing, Ledger, State
-from oceanbox.physics.tracers import concentration, mixing_flux, tracer_flux, transport_step
+from oceanbox.physics.tracers import concentration, per_thickness, tracer_flux, transport_step
 from oceanbox.stepping.booking import book
-from oceanbox.stepping.forward_backward import wind_fraction
+from oceanbox.stepping.forward_backward import fill_edges, wind_fraction
 from oceanbox.stepping.memory import Workspace
 
 __all__ = ["CLASSICAL_4", "STRONG_3", "Stages", "Tableau", "advance_runge_kutta", "empty_stages", "tendency"]
@@ -82,16 +91,15 @@ def content_tendency(
     advection_x: Array, advection_y: Array, mixing_x: Array, mixing_y: Array, out: Array,
 ) -> None:  # fmt: skip
     """out = -div(U c) + div(kappa_h h grad c) for one content of one layer, booked over ``booked`` seconds."""
-    tx, ty = work.tracer_x, work.tracer_y
-    concentration(h, content, work.concentration)
-    tracer_flux(h, work.concentration, work.flux_x[k], work.flux_y[k], 0.0, constants, tx, ty)
-    book(advection_x, advection_y, tx, ty, booked)
+    rows = h.shape[0]
+    per_h, c, tx, ty = work.per_thickness[k], work.temperature[k], work.tracer_x[k], work.tracer_y[k]
+    concentration(0, rows, per_h, content, c)
+    tracer_flux(
+        2, rows - 1, h, per_h, c, work.flux_x[k], work.flux_y[k], 0.0, booked, constants,
+        advection_x, advection_y, mixing_x, mixing_y, tx, ty,
+    )  # fmt: skip
     out[:, :] = 0.0
-    transport_step(out, tx, ty, 1.0, constants)
-    if constants.diffusivity > 0.0:
-        mixing_flux(h, work.concentration, constants, tx, ty)
-        book(mixing_x, mixing_y, tx, ty, booked)
-        transport_step(out, tx, ty, 1.0, constants)
+    transport_step(2, rows - 2, out, tx, ty, 1.0, constants)
 
 
 @kernel
@@ -105,6 +113,34 @@ def add_drag(u: Array, rate: Array, du: Array) -> None:
 
 
 @kernel
+def momentum_tendency(
+    state: State, k: int, forcing: Forcing, constants: Constants, wind: float, work: Workspace, du: Array, dv: Array
+) -> None:
+    """du, dv += advection, rotation, friction, wind and drag on layer ``k``; its transports are in ``work``."""
+    u, v = state.velocity_x[k], state.velocity_y[k]
+    last = u.shape[0] - 1
+    fx, fy, hx, hy = work.flux_x[k], work.flux_y[k], work.thickness_x[k], work.thickness_y[k]
+    force_x, force_y, turned = work.force_x[k], work.force_y[k], work.turned[k]
+    friction(2, last - 1, u, hx, constants, force_x)
+    friction(2, last - 1, v, hy, constants, force_y)
+    corner_terms(2, last, hx, u, v, fy, forcing.coriolis, constants, work.vorticity[k], turned)
+    planetary_x(2, last - 1, hx, turned, fy, forcing.coriolis, constants, force_x)
+    planetary_y(3, last - 1, hx, hy, fx, forcing.coriolis, constants, turned, force_y)
+    du += force_x
+    dv += force_y
+    if constants.momentum_advection:
+        kinetic_energy(1, last, u, v, work.kinetic[k])
+        advection(2, last - 1, work.vorticity[k], work.kinetic[k], fx, fy, constants, force_x, force_y)
+        du += force_x
+        dv += force_y
+    if k == 0:
+        wind_acceleration(forcing.wind_x, hx, wind, du)
+        wind_acceleration(forcing.wind_y, hy, wind, dv)
+    add_drag(u, forcing.drag_x, du)
+    add_drag(v, forcing.drag_y, dv)
+
+
+@kernel
 def tendency(
     state: State, forcing: Forcing, constants: Constants, wind: float, longest: float, booked: float,
     ledger: Ledger, work: Workspace, dh: Array, dheat: Array, dsalt: Array, du: Array, dv: Array,
@@ -112,34 +148,23 @@ def tendency(
     """Time derivative of the state without column exchange, (L, ny+4, nx+4) each, zero in ghost cells.
 
     Edges of ``state`` must be filled.  ``longest`` [s] is the step for which thickness must stay positive, ``booked`` [s] the
-    time over which the ledger counts these fluxes.
+    time over which the ledger counts these fluxes.  The belts of ``work`` hold all rows.
     """
     h, heat, salt, u, v = state
-    layers = h.shape[0]
-    for k in range(layers):
-        layer_buoyancy(h[k], heat[k], salt[k], constants, work.buoyancy[k])
-    pressure_force(h, work.buoyancy, constants, work.layer_pair, du, dv)
+    layers, rows, _ = h.shape
+    layer_pressure(0, rows, h, heat, salt, constants, work.buoyancy, work.pressure, work.depth)
     for k in range(layers):
         fx, fy = work.flux_x[k], work.flux_y[k]
         hx, hy = work.thickness_x[k], work.thickness_y[k]
-        mean_thickness(h[k], constants, hx, hy)
-        volume_transport(h[k], hx, hy, u[k], v[k], constants, fx, fy)
-        planetary_x(hx, fy, forcing.coriolis, constants, work.force_x[k])
-        planetary_y(hx, hy, fx, forcing.coriolis, constants, work.force_y[k])
-        du[k] += work.force_x[k]
-        dv[k] += work.force_y[k]
-        if constants.momentum_advection:
-            advection(hx, u[k], v[k], fx, fy, constants, work.vorticity, work.kinetic, work.force_x[k], work.force_y[k])
-            du[k] += work.force_x[k]
-            dv[k] += work.force_y[k]
-        ledger.limited_faces[0] += keep_thickness_positive(h[k], fx, fy, longest, constants, work.share)
-        if k == 0:
-            wind_acceleration(forcing.wind_x, hx, wind, du[k])
-            wind_acceleration(forcing.wind_y, hy, wind, dv[k])
-        friction(u[k], hx, constants, du[k])
-        friction(v[k], hy, constants, dv[k])
-        add_drag(u[k], forcing.drag_x, du[k])
-        add_drag(v[k], forcing.drag_y, dv[k])
+        pressure_force_x(2, rows - 2, work.buoyancy[k], work.pressure[k], work.depth[k], constants, du[k])
+        pressure_force_y(2, rows - 2, work.buoyancy[k], work.pressure[k], work.depth[k], constants, dv[k])
+        per_thickness(0, rows, h[k], work.per_thickness[k])
+        mean_thickness(1, rows, h[k], constants, hx, hy)
+        transport_x(2, rows - 1, h[k], hx, u[k], constants, fx)
+        transport_y(2, rows - 1, h[k], hy, v[k], constants, fy)
+        momentum_tendency(state, k, forcing, constants, wind, work, du[k], dv[k])
+        if outflow_share(2, rows - 2, work.per_thickness[k], fx, fy, longest, constants, work.share[k]) > 0:
+            ledger.limited_faces[0] += limit_outflow(2, rows - 1, rows, fx, fy, work.share[k])
         content_tendency(
             h[k], heat[k], work, k, booked, constants, ledger.heat_advection_x[k], ledger.heat_advection_y[k],
             ledger.heat_mixing_x[k], ledger.heat_mixing_y[k], dheat[k],
@@ -149,21 +174,27 @@ def tendency(
                 h[k], salt[k], work, k, booked, constants, ledger.salt_advection_x[k], ledger.salt_advection_y[k],
                 ledger.salt_mixing_x[k], ledger.salt_mixing_y[k], dsalt[k],
             )  # fmt: skip
-        book(ledger.volume_x[k], ledger.volume_y[k], fx, fy, booked)
+        book(2, rows - 1, ledger.volume_x[k], ledger.volume_y[k], fx, fy, booked)
         dh[k, :, :] = 0.0
-        transport_step(dh[k], fx, fy, 1.0, constants)
+        transport_step(2, rows - 2, dh[k], fx, fy, 1.0, constants)
 
 
 @kernel
-def fill_edges(state: State, constants: Constants) -> None:
-    """Ghost cells of all five fields."""
-    periodic = constants.periodic_x
-    for k in range(state.thickness.shape[0]):
-        fill_centre_edges(state.thickness[k], periodic)
-        fill_centre_edges(state.heat[k], periodic)
-        fill_centre_edges(state.salt[k], periodic)
-        fill_x_face_edges(state.velocity_x[k], periodic, constants.tangential_sign)
-        fill_y_face_edges(state.velocity_y[k], periodic, constants.tangential_sign)
+def exchange_columns(
+    state: State, forcing: Forcing, constants: Constants, wind: float, dt: float, ledger: Ledger, work: Workspace
+) -> None:
+    """The top layer exchanges with air and abyss; what comes in is at rest.  Edges of ``state`` must be filled."""
+    h, u, v = state.thickness[0], state.velocity_x[0], state.velocity_y[0]
+    last = h.shape[0] - 1
+    Mx, My, gain = work.mixed_x[0], work.mixed_y[0], work.gain[0]
+    if constants.mixed_depth > 0.0:
+        mixed_layer_transport(2, last, h, u, v, forcing.shear_x, forcing.shear_y, wind, constants, Mx, My)
+    exchange(
+        2, last - 1, h, state.heat[0], state.salt[0], forcing, constants, dt, ledger, Mx, My, gain, work.heating[0]
+    )
+    fill_centre_edges(2, last - 1, h, constants.periodic_x)
+    mean_thickness(1, last + 1, h, constants, work.thickness_x[0], work.thickness_y[0])
+    dilute_momentum(2, last - 1, u, v, work.thickness_x[0], work.thickness_y[0], gain, constants)
 
 
 @kernel
@@ -212,13 +243,5 @@ def advance_runge_kutta(
         combine(state.velocity_y, stages.velocity_y, tableau.b, dt, state.velocity_y)
         fill_edges(state, constants)
         wind = wind_fraction(time + 0.5 * dt, constants)
-        exchange(
-            state.thickness[0], state.heat[0], state.salt[0], state.velocity_x[0], state.velocity_y[0],
-            forcing, constants, wind, dt, ledger, work.mixed_x, work.mixed_y, work.gain[0],
-        )  # fmt: skip
-        fill_centre_edges(state.thickness[0], constants.periodic_x)
-        mean_thickness(state.thickness[0], constants, work.thickness_x[0], work.thickness_y[0])
-        dilute_momentum(
-            state.velocity_x[0], state.velocity_y[0], work.thickness_x[0], work.thickness_y[0], work.gain[0], constants
-        )
+        exchange_columns(state, forcing, constants, wind, dt, ledger, work)
         fill_edges(state, constants)

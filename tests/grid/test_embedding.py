@@ -52,7 +52,7 @@ def test_embedded_centres_have_their_edges_filled(grid: Grid) -> None:
     """Filling them again changes nothing: no gradient across a wall, a channel wrapped."""
     wide = grid.embed_centres(any_centres(grid))[0]
     filled = wide.copy()
-    fill_centre_edges(filled, grid.periodic_x)
+    fill_centre_edges(HALO, len(filled) - HALO, filled, grid.periodic_x)
     assert np.array_equal(filled, wide)
 
 
@@ -73,14 +73,14 @@ def test_a_channel_goes_on_at_its_other_end() -> None:
         assert np.array_equal(row, np.resize(np.roll(row[HALO:-HALO], HALO), row.size))
 
 
-Filler = Callable[[Array, bool, float], None]
+Filler = Callable[[int, int, Array, bool, float], None]
 
 
 def filled(filler: Filler, wide: Array, grid: Grid, tangential_sign: float) -> Array:
     """The first layer of ``wide`` with its edges filled from values that are certainly wrong."""
     field = wide[0].copy()
     field[:HALO], field[:, :HALO] = np.nan, np.nan
-    filler(field, grid.periodic_x, tangential_sign)
+    filler(HALO, len(field) - HALO, field, grid.periodic_x, tangential_sign)
     return field
 
 

@@ -130,7 +130,7 @@ def rates(model: Model) -> Fields:
     """d/dt of h, h Theta, h Sigma, u, v at interior points, in that order; without column exchange or any limiter."""
     grid, layers = model.grid, model.state.thickness.shape[0]
     out = [np.zeros((layers, *grid.shape)) for _ in range(5)]
-    ledger, work = empty_ledger(grid, layers), empty_workspace(grid, layers)
+    ledger, work = empty_ledger(grid, layers), empty_workspace(grid, layers, grid.shape[0])
     tendency(model.state, model.setup.forcing, model.constants, 0.0, 0.0, 0.0, ledger, work, *out)
     dh, dheat, dsalt, du, dv = out
     return Fields(grid.centres(dh), grid.centres(dheat), grid.centres(dsalt), grid.x_faces(du), grid.y_faces(dv))

@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 
 from oceanbox.experiment.model import Model
 from oceanbox.grid import HALO, Grid
-from oceanbox.physics.continuity import keep_thickness_positive
+from oceanbox.physics.continuity import limit_outflow, outflow_share
 from oceanbox.physics.limiter import limited_face_value
 from oceanbox.physics.state import Constants
 from oceanbox.physics.tracers import concentration, tracer_flux, transport_step
@@ -66,23 +66,40 @@ class Flow(NamedTuple):
 
     def limited(self) -> "Flow":
         """The flow after the limiter of outflow."""
-        U, V = self.transport_x.copy(), self.transport_y.copy()
-        keep_thickness_positive(self.thickness, U, V, STEP, self.constants, np.zeros_like(U))
+        U, V, share = self.transport_x.copy(), self.transport_y.copy(), np.zeros_like(self.transport_x)
+        rows = len(U)
+        outflow_share(2, rows - 2, 1.0 / self.thickness, U, V, STEP, self.constants, share)
+        limit_outflow(2, rows - 1, rows, U, V, share)
         return self._replace(transport_x=U, transport_y=V)
 
     def thickness_after(self) -> Array:
         """h after the step, (ny, nx)."""
         h = self.thickness.copy()
-        transport_step(h, self.transport_x, self.transport_y, STEP, self.constants)
+        transport_step(2, len(h) - 2, h, self.transport_x, self.transport_y, STEP, self.constants)
         return self.grid.centres(h)
 
     def carry(self, values: Array, courant_step: float = STEP) -> Array:
         """A concentration (ny, nx) after the step; ``courant_step`` 0 leaves out the Courant correction."""
-        content = self.thickness * self.grid.embed_centres(values)
-        c, fx, fy = (np.zeros_like(content) for _ in range(3))
-        concentration(self.thickness, content, c)
-        tracer_flux(self.thickness, c, self.transport_x, self.transport_y, courant_step, self.constants, fx, fy)
-        transport_step(content, fx, fy, STEP, self.constants)
+        h, rows = self.thickness, len(self.thickness)
+        content = h * self.grid.embed_centres(values)
+        c, fx, fy, *books = (np.zeros_like(content) for _ in range(7))
+        concentration(0, rows, 1.0 / h, content, c)
+        tracer_flux(
+            2,
+            rows - 1,
+            h,
+            1.0 / h,
+            c,
+            self.transport_x,
+            self.transport_y,
+            courant_step,
+            STEP,
+            self.constants,
+            *books,
+            fx,
+            fy,
+        )
+        transport_step(2, rows - 2, content, fx, fy, STEP, self.constants)
         return self.grid.centres(content) / self.thickness_after()
 
 

@@ -114,7 +114,7 @@ def test_the_layer_has_the_buoyancy_of_its_temperature_and_salinity() -> None:
     })  # fmt: skip
     found = np.empty(model.grid.shape)
     h, heat, salt = (field[0] for field in model.state[:3])
-    layer_buoyancy(h, heat, salt, model.constants, found)
+    layer_buoyancy(0, len(h), h, heat, salt, model.constants, found)
     expected = np.vectorize(lambda t, s: buoyancy(t, s, model.constants))(heat / h, salt / h)
     assert np.abs(found - expected).max() <= 4.0 * EPS * np.abs(expected).max()
     assert np.abs(model.buoyancy[0] - model.grid.centres(found)).max() <= 8.0 * EPS * np.abs(expected).max()

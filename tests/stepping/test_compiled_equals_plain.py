@@ -24,6 +24,7 @@ import oceanbox.stepping
 from oceanbox.experiment import model as model_module
 from oceanbox.experiment.model import Model
 from tests.building import box, replace_constants, set_state
+from tests.physics.layered import fill, layered_box, random_fields, roughly
 
 # Fused multiplications and reordered sums differ in the last places of the largest terms; where those cancel, what is left is
 # round-off of numbers up to thousands (K m, the heat of a column).
@@ -73,6 +74,8 @@ CASES: dict[str, dict[str, Any]] = {
     },
     "linear": BUSY | LINEAR,
 }
+
+TWO_LAYERS = "two layers"
 
 
 def modules() -> Iterator[ModuleType]:
@@ -188,13 +191,20 @@ def stirred(changes: dict[str, Any]) -> Model:
     return model
 
 
+def two_layers() -> Model:
+    """Two layers in motion over the abyss: each presses on the other."""
+    model = layered_box(2, {"basin.cells_x": 4, "basin.cells_y": 5})
+    fill(model, random_fields(model.grid, 2, roughly(np.random.default_rng(5))))
+    return model
+
+
 @cache
 def kernels_called_by(case: str) -> frozenset[str]:
     """Names of the kernels that a few steps of ``case`` called, each having been compared."""
     twins = Twins()
     twins.put_in()
     try:
-        model = stirred(CASES[case])
+        model = stirred(CASES[case]) if case in CASES else two_layers()
         replace_constants(model, centred_tracers=case.endswith("channel"))
         model.advance(STEPS)
         # A current that would empty cells brings in the limiter of thickness.
@@ -205,7 +215,7 @@ def kernels_called_by(case: str) -> frozenset[str]:
     return frozenset(twins.called)
 
 
-@pytest.mark.parametrize("case", list(CASES))
+@pytest.mark.parametrize("case", [*CASES, TWO_LAYERS])
 def test_compiled_kernels_equal_their_source(case: str) -> None:
     """To round-off, for every call of five steps; a difference fails inside and names the kernel."""
     assert kernels_called_by(case)
@@ -213,5 +223,5 @@ def test_compiled_kernels_equal_their_source(case: str) -> None:
 
 def test_every_kernel_has_been_compared() -> None:
     """The cases together call all there are, so a new kernel must come with a case that calls it."""
-    called = frozenset().union(*(kernels_called_by(case) for case in CASES))
+    called = frozenset().union(*(kernels_called_by(case) for case in (*CASES, TWO_LAYERS)))
     assert called == all_kernels()
