@@ -11,7 +11,15 @@ from oceanbox.physics.limiter import limited_face_value
 from oceanbox.physics.rows import place
 from oceanbox.physics.state import Constants
 
-__all__ = ["LARGEST_OUTFLOW", "limit_outflow", "mean_thickness", "outflow_share", "transport_x", "transport_y"]
+__all__ = [
+    "LARGEST_OUTFLOW",
+    "centred_transports",
+    "limit_outflow",
+    "mean_thickness",
+    "outflow_share",
+    "transport_x",
+    "transport_y",
+]
 
 Array = NDArray[np.float64]
 
@@ -81,6 +89,30 @@ def transport_y(first: int, end: int, h: Array, hy: Array, v: Array, constants: 
             for n in range(columns - 2):
                 i = n + 1
                 V[out, i] = hy[here, i] * v[j, i]
+
+
+@kernel
+def centred_transports(
+    first: int, end: int, h: Array, u: Array, v: Array, weights: tuple[float, float, float], constants: Constants,
+    before_x: Array, earlier_x: Array, before_y: Array, earlier_y: Array,
+    hx: Array, hy: Array, U: Array, V: Array, F: Array, G: Array,
+) -> None:  # fmt: skip
+    """`mean_thickness`, `transport_x` and `transport_y` for centred thickness, and F = w0 U + w1 U' + w2 U'', in one pass.
+
+    U' and U'' are the transports of the steps before; ``hx``, ``hy``, ``F``, ``G`` belts, all else (ny+4, nx+4).
+    """
+    w0, w1, w2 = weights
+    depth = constants.linear_depth
+    for j in range(first, end):
+        here = place(j, F.shape[0])
+        for n in range(h.shape[1] - 2):
+            i = n + 1
+            hx[here, i] = depth if depth > 0.0 else 0.5 * (h[j, i - 1] + h[j, i])
+            hy[here, i] = depth if depth > 0.0 else 0.5 * (h[j - 1, i] + h[j, i])
+            U[j, i] = hx[here, i] * u[j, i]
+            V[j, i] = hy[here, i] * v[j, i]
+            F[here, i] = w0 * U[j, i] + w1 * before_x[j, i] + w2 * earlier_x[j, i]
+            G[here, i] = w0 * V[j, i] + w1 * before_y[j, i] + w2 * earlier_y[j, i]
 
 
 # A cell may lose at most this share of its water through its faces in one step.

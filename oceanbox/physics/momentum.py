@@ -143,24 +143,34 @@ def wind_acceleration(stress: Array, thickness: Array, fraction: float, du: Arra
 
 
 @kernel
-def friction(first: int, end: int, u: Array, thickness: Array, constants: Constants, du: Array) -> None:
-    """du = A lap(u), or A lap(h u)/h where friction acts on transport; ``thickness`` is h on the faces of u (ny+4, nx+4)."""
+def laplacian(middle: float, west: float, east: float, south: float, north: float, ax: float, ay: float) -> float:
+    """A (u_xx + u_yy) with ``ax`` = A/dx^2 and ``ay`` = A/dy^2."""
+    return ax * (west + east - 2.0 * middle) + ay * (south + north - 2.0 * middle)
+
+
+@kernel
+def friction(
+    first: int, end: int, u: Array, v: Array, hx: Array, hy: Array, constants: Constants, du: Array, dv: Array
+) -> None:
+    """du = A lap(u) and dv = A lap(v), or A lap(h u)/h where friction acts on transport; ``u`` and ``v`` (ny+4, nx+4)."""
     columns = u.shape[1]
     ax = constants.viscosity / constants.dx**2
     ay = constants.viscosity / constants.dy**2
-    h = thickness
     for j in range(first, end):
         here, behind, beyond = place(j, du.shape[0]), place(j - 1, du.shape[0]), place(j + 1, du.shape[0])
         if constants.viscosity_on_transport:
-            for n in range(columns - 4):
-                i = n + 2
-                middle = 2.0 * h[here, i] * u[j, i]
-                across_x = h[here, i - 1] * u[j, i - 1] + h[here, i + 1] * u[j, i + 1] - middle
-                across_y = h[behind, i] * u[j - 1, i] + h[beyond, i] * u[j + 1, i] - middle
-                du[here, i] = (ax * across_x + ay * across_y) / h[here, i]
+            for field, h, out in ((u, hx, du), (v, hy, dv)):
+                for n in range(columns - 4):
+                    i = n + 2
+                    middle, west, east = (
+                        h[here, i] * field[j, i],
+                        h[here, i - 1] * field[j, i - 1],
+                        h[here, i + 1] * field[j, i + 1],
+                    )
+                    south, north = h[behind, i] * field[j - 1, i], h[beyond, i] * field[j + 1, i]
+                    out[here, i] = laplacian(middle, west, east, south, north, ax, ay) / h[here, i]
         else:
             for n in range(columns - 4):
                 i = n + 2
-                across_x = u[j, i - 1] + u[j, i + 1] - 2.0 * u[j, i]
-                across_y = u[j - 1, i] + u[j + 1, i] - 2.0 * u[j, i]
-                du[here, i] = ax * across_x + ay * across_y
+                du[here, i] = laplacian(u[j, i], u[j, i - 1], u[j, i + 1], u[j - 1, i], u[j + 1, i], ax, ay)
+                dv[here, i] = laplacian(v[j, i], v[j, i - 1], v[j, i + 1], v[j - 1, i], v[j + 1, i], ax, ay)

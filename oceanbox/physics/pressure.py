@@ -14,13 +14,33 @@ import numpy as np
 from numpy.typing import NDArray
 
 from oceanbox.compiling import kernel
-from oceanbox.physics.buoyancy import layer_buoyancy
+from oceanbox.physics.buoyancy import buoyancy
 from oceanbox.physics.rows import place
 from oceanbox.physics.state import Constants
 
-__all__ = ["layer_pressure", "pressure_force_x", "pressure_force_y"]
+__all__ = ["layer_pressure", "pressure_force", "pressure_forces"]
 
 Array = NDArray[np.float64]
+
+
+@kernel
+def own_pressure(
+    first: int, end: int, h: Array, heat: Array, salt: Array, constants: Constants, b: Array, P: Array, d: Array
+) -> None:
+    """b, P = h b/2 and d = h/2 of one layer; ``h``, ``heat``, ``salt`` (ny+4, nx+4), the others belts."""
+    for j in range(first, end):
+        here = place(j, P.shape[0])
+        if constants.salty:
+            for i in range(h.shape[1]):
+                per_h = 1.0 / h[j, i]
+                b[here, i] = buoyancy(heat[j, i] * per_h, salt[j, i] * per_h, constants)
+                d[here, i] = 0.5 * h[j, i]
+                P[here, i] = d[here, i] * b[here, i]
+        else:
+            for i in range(h.shape[1]):
+                b[here, i] = buoyancy(heat[j, i] / h[j, i], 0.0, constants)
+                d[here, i] = 0.5 * h[j, i]
+                P[here, i] = d[here, i] * b[here, i]
 
 
 @kernel
@@ -48,13 +68,7 @@ def layer_pressure(
     """b, P and d of all layers, ghost cells included; ``h``, ``heat``, ``salt`` (L, ny+4, nx+4), the others (L, belt)."""
     layers = h.shape[0]
     for k in range(layers):
-        layer_buoyancy(first, end, h[k], heat[k], salt[k], constants, b[k])
-        hk, bk, Pk, dk = h[k], b[k], P[k], d[k]
-        for j in range(first, end):
-            here = place(j, Pk.shape[0])
-            for i in range(hk.shape[1]):
-                dk[here, i] = 0.5 * hk[j, i]
-                Pk[here, i] = dk[here, i] * bk[here, i]
+        own_pressure(first, end, h[k], heat[k], salt[k], constants, b[k], P[k], d[k])
     for k in range(layers):
         for below in range(k + 1, layers):
             add_weight_below(first, end, h[below], b[below], P[k])
@@ -63,24 +77,25 @@ def layer_pressure(
 
 
 @kernel
-def pressure_force_x(first: int, end: int, b: Array, P: Array, d: Array, constants: Constants, fx: Array) -> None:
-    """-(P_x + <b>^x d_x) on x faces, m s-2; belts."""
-    per_dx = 1.0 / constants.dx
-    for j in range(first, end):
-        here = place(j, fx.shape[0])
-        for n in range(fx.shape[1] - 4):
-            i = n + 2
-            mean = 0.5 * (b[here, i] + b[here, i - 1])
-            fx[here, i] = -(P[here, i] - P[here, i - 1] + mean * (d[here, i] - d[here, i - 1])) * per_dx
+def pressure_force(
+    P: float, P_behind: float, b: float, b_behind: float, d: float, d_behind: float, per_width: float
+) -> float:
+    """-(P_x + <b>^x d_x) on a face, m s-2, from the cells beyond and behind it."""
+    return -(P - P_behind + 0.5 * (b + b_behind) * (d - d_behind)) * per_width
 
 
 @kernel
-def pressure_force_y(first: int, end: int, b: Array, P: Array, d: Array, constants: Constants, fy: Array) -> None:
-    """-(P_y + <b>^y d_y) on y faces, m s-2; belts."""
+def pressure_forces(
+    first: int, end: int, b: Array, P: Array, d: Array, constants: Constants, fx: Array, fy: Array
+) -> None:
+    """The force on x and y faces; ``b``, ``P``, ``d`` belts, ``fx`` and ``fy`` (ny+4, nx+4)."""
+    per_dx = 1.0 / constants.dx
     per_dy = 1.0 / constants.dy
     for j in range(first, end):
-        here, south = place(j, fy.shape[0]), place(j - 1, fy.shape[0])
-        for n in range(fy.shape[1] - 4):
+        here, south = place(j, P.shape[0]), place(j - 1, P.shape[0])
+        for n in range(fx.shape[1] - 4):
             i = n + 2
-            mean = 0.5 * (b[here, i] + b[south, i])
-            fy[here, i] = -(P[here, i] - P[south, i] + mean * (d[here, i] - d[south, i])) * per_dy
+            fx[j, i] = pressure_force(
+                P[here, i], P[here, i - 1], b[here, i], b[here, i - 1], d[here, i], d[here, i - 1], per_dx
+            )
+            fy[j, i] = pressure_force(P[here, i], P[south, i], b[here, i], b[south, i], d[here, i], d[south, i], per_dy)

@@ -11,26 +11,18 @@ from oceanbox.physics.limiter import limited_face_value
 from oceanbox.physics.rows import place
 from oceanbox.physics.state import Constants
 
-__all__ = ["concentration", "per_thickness", "tracer_flux", "transport_step"]
+__all__ = ["concentration", "tracer_flux", "transport_step"]
 
 Array = NDArray[np.float64]
 
 
 @kernel
-def per_thickness(first: int, end: int, h: Array, per_h: Array) -> None:
-    """1/h in every cell, m-1, ghost cells included; ``h`` (ny+4, nx+4), ``per_h`` a belt."""
-    for j in range(first, end):
-        here = place(j, per_h.shape[0])
-        for i in range(h.shape[1]):
-            per_h[here, i] = 1.0 / h[j, i]
-
-
-@kernel
-def concentration(first: int, end: int, per_h: Array, content: Array, c: Array) -> None:
-    """Theta = (h Theta)/h in every cell, ghost cells included; ``content`` (ny+4, nx+4), the others belts."""
+def concentration(first: int, end: int, h: Array, content: Array, per_h: Array, c: Array) -> None:
+    """1/h and Theta = (h Theta)/h in every cell, ghost cells included; ``h`` and ``content`` (ny+4, nx+4), the others belts."""
     for j in range(first, end):
         here = place(j, c.shape[0])
-        for i in range(content.shape[1]):
+        for i in range(h.shape[1]):
+            per_h[here, i] = 1.0 / h[j, i]
             c[here, i] = content[j, i] * per_h[here, i]
 
 

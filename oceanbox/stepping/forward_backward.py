@@ -23,14 +23,21 @@ from numpy.typing import NDArray
 
 from oceanbox.compiling import kernel, part
 from oceanbox.grid.edges import fill_centre_edges, fill_x_face_edges, fill_y_face_edges
-from oceanbox.physics.continuity import limit_outflow, mean_thickness, outflow_share, transport_x, transport_y
+from oceanbox.physics.continuity import (
+    centred_transports,
+    limit_outflow,
+    mean_thickness,
+    outflow_share,
+    transport_x,
+    transport_y,
+)
 from oceanbox.physics.entrainment import mixed_layer_transport
 from oceanbox.physics.exchange import dilute_momentum, exchange
 from oceanbox.physics.momentum import advection, corner_terms, friction, kinetic_energy, planetary_x, planetary_y
-from oceanbox.physics.pressure import layer_pressure, pressure_force_x, pressure_force_y
+from oceanbox.physics.pressure import layer_pressure, pressure_force
 from oceanbox.physics.rows import place, window
 from oceanbox.physics.state import Constants, Forcing, Ledger, State
-from oceanbox.physics.tracers import concentration, per_thickness, tracer_flux, transport_step
+from oceanbox.physics.tracers import concentration, tracer_flux, transport_step
 from oceanbox.stepping.booking import book
 from oceanbox.stepping.memory import Memory, Workspace
 from oceanbox.stepping.weights import advection_weights, pressure_weights, transport_weights
@@ -73,19 +80,26 @@ def open_band(
     rows = h.shape[0]
 
     first, end = window(band, height, 0, 0, rows)
-    per_thickness(first, end, h, work.per_thickness[k])
-    concentration(first, end, work.per_thickness[k], state.heat[k], work.temperature[k])
+    concentration(first, end, h, state.heat[k], work.per_thickness[k], work.temperature[k])
     if constants.salty:
-        concentration(first, end, work.per_thickness[k], state.salt[k], work.salinity[k])
-    first, end = window(band, height, 0, 1, rows)
-    mean_thickness(first, end, h, constants, hx, hy)
+        concentration(first, end, h, state.salt[k], work.per_thickness[k], work.salinity[k])
 
-    first, end = window(band, height, 0, 2, rows - 1)
+    first, end = window(band, height, 0, 1, rows)
     weights = transport_weights(history)
-    transport_x(first, end, h, hx, u, constants, tx[now, k])
-    transport_y(first, end, h, hy, v, constants, ty[now, k])
-    weigh_transports(first, end, tx[now, k], tx[before, k], tx[earlier, k], weights, work.flux_x[k])
-    weigh_transports(first, end, ty[now, k], ty[before, k], ty[earlier, k], weights, work.flux_y[k])
+    fx, fy = work.flux_x[k], work.flux_y[k]
+    if constants.upwind_thickness and constants.linear_depth == 0.0:
+        mean_thickness(first, end, h, constants, hx, hy)
+        first, end = window(band, height, 0, 2, rows - 1)
+        transport_x(first, end, h, hx, u, constants, tx[now, k])
+        transport_y(first, end, h, hy, v, constants, ty[now, k])
+        weigh_transports(first, end, tx[now, k], tx[before, k], tx[earlier, k], weights, fx)
+        weigh_transports(first, end, ty[now, k], ty[before, k], ty[earlier, k], weights, fy)
+    else:
+        centred_transports(
+            first, end, h, u, v, weights, constants, tx[before, k], tx[earlier, k], ty[before, k], ty[earlier, k],
+            hx, hy, tx[now, k], ty[now, k], fx, fy,
+        )  # fmt: skip
+    first, end = window(band, height, 0, 2, rows - 1)
     if constants.momentum_advection:
         corner_terms(
             first, end, hx, u, v, ty[now, k], forcing.coriolis, constants, work.vorticity[k], work.turned[k]
@@ -94,8 +108,7 @@ def open_band(
         kinetic_energy(first, end, u, v, work.kinetic[k])
 
     first, end = window(band, height, 1, 2, rows - 2)
-    friction(first, end, u, hx, constants, work.force_x[k])
-    friction(first, end, v, hy, constants, work.force_y[k])
+    friction(first, end, u, v, hx, hy, constants, work.force_x[k], work.force_y[k])
     planetary_x(first, end, hx, work.turned[k], ty[now, k], forcing.coriolis, constants, work.force_x[k])
     if constants.momentum_advection:
         advection(
@@ -163,27 +176,63 @@ def exchange_band(
 
 
 @kernel
-def update_velocity(
-    first: int, end: int, u: Array, force: Array, advection_now: Array, advection_before: Array, advection_earlier: Array,
-    pressure_next: Array, pressure_now: Array, pressure_before: Array, pressure_earlier: Array,
-    thickness: Array, stress: Array, wind: float, drag: Array, history: int, dt: float,
-) -> None:  # fmt: skip
-    """u^{n+1} = (u^n + dt [weighted terms + force + wind tau/(rho0 h)])/(1 + dt r), written with one division.
+def stepped_velocity(
+    u: float, force: float, advections: tuple[float, float, float], pressures: tuple[float, float, float, float],
+    advection_weight: tuple[float, float, float], pressure_weight: tuple[float, float, float, float],
+    h: float, stress: float, drag: float, dt: float,
+) -> float:  # fmt: skip
+    """u^{n+1} = (u^n + dt [weighted terms + force + tau/(rho0 h)])/(1 + dt r), written with one division."""
+    a0, a1, a2 = advection_weight
+    p0, p1, p2, p3 = pressure_weight
+    total = a0 * advections[0] + a1 * advections[1] + a2 * advections[2] + force
+    total += p0 * pressures[0] + p1 * pressures[1] + p2 * pressures[2] + p3 * pressures[3]
+    return ((u + dt * total) * h + dt * stress) / (h * (1.0 + dt * drag))
 
-    The oldest pressure slot then takes the newest force.  ``force``, ``pressure_next`` and ``thickness`` are belts.
-    """
-    a0, a1, a2 = advection_weights(history)
-    p0, p1, p2, p3 = pressure_weights(history)
+
+@kernel
+def update_u(
+    first: int, end: int, u: Array, force: Array, advection_now: Array, advection_before: Array, advection_earlier: Array,
+    pressure_now: Array, pressure_before: Array, pressure_earlier: Array, P: Array, b: Array, d: Array,
+    h: Array, stress: Array, wind: float, drag: Array, constants: Constants, history: int, dt: float,
+) -> None:  # fmt: skip
+    """New u of rows; the oldest pressure slot takes the newest force.  ``force``, ``P``, ``b``, ``d``, ``h`` are belts."""
+    advection_weight, pressure_weight = advection_weights(history), pressure_weights(history)
+    per_dx = 1.0 / constants.dx
     for j in range(first, end):
         here = place(j, force.shape[0])
         for n in range(u.shape[1] - 4):
             i = n + 2
-            total = a0 * advection_now[j, i] + a1 * advection_before[j, i] + a2 * advection_earlier[j, i]
-            total += p0 * pressure_next[here, i] + p1 * pressure_now[j, i]
-            total += p2 * pressure_before[j, i] + p3 * pressure_earlier[j, i] + force[here, i]
-            pressure_earlier[j, i] = pressure_next[here, i]
-            h = thickness[here, i]
-            u[j, i] = ((u[j, i] + dt * total) * h + dt * wind * stress[j, i]) / (h * (1.0 + dt * drag[j, i]))
+            newest = pressure_force(
+                P[here, i], P[here, i - 1], b[here, i], b[here, i - 1], d[here, i], d[here, i - 1], per_dx
+            )
+            u[j, i] = stepped_velocity(
+                u[j, i], force[here, i], (advection_now[j, i], advection_before[j, i], advection_earlier[j, i]),
+                (newest, pressure_now[j, i], pressure_before[j, i], pressure_earlier[j, i]), advection_weight,
+                pressure_weight, h[here, i], wind * stress[j, i], drag[j, i], dt,
+            )  # fmt: skip
+            pressure_earlier[j, i] = newest
+
+
+@kernel
+def update_v(
+    first: int, end: int, v: Array, force: Array, advection_now: Array, advection_before: Array, advection_earlier: Array,
+    pressure_now: Array, pressure_before: Array, pressure_earlier: Array, P: Array, b: Array, d: Array,
+    h: Array, stress: Array, wind: float, drag: Array, constants: Constants, history: int, dt: float,
+) -> None:  # fmt: skip
+    """New v of rows, as `update_u`."""
+    advection_weight, pressure_weight = advection_weights(history), pressure_weights(history)
+    per_dy = 1.0 / constants.dy
+    for j in range(first, end):
+        here, south = place(j, force.shape[0]), place(j - 1, force.shape[0])
+        for n in range(v.shape[1] - 4):
+            i = n + 2
+            newest = pressure_force(P[here, i], P[south, i], b[here, i], b[south, i], d[here, i], d[south, i], per_dy)
+            v[j, i] = stepped_velocity(
+                v[j, i], force[here, i], (advection_now[j, i], advection_before[j, i], advection_earlier[j, i]),
+                (newest, pressure_now[j, i], pressure_before[j, i], pressure_earlier[j, i]), advection_weight,
+                pressure_weight, h[here, i], wind * stress[j, i], drag[j, i], dt,
+            )  # fmt: skip
+            pressure_earlier[j, i] = newest
 
 
 @kernel
@@ -206,20 +255,18 @@ def push_band(
     hx, hy, U = work.later_thickness_x[k], work.later_thickness_y[k], work.later_transport_x[k]
     b, P, d = work.buoyancy[k], work.pressure[k], work.depth[k]
     # Pressure slots: 'before' n, 'earlier' n-1, 'now' n-2.
-    pressure_force_x(first, end, b, P, d, constants, work.pressure_x[k])
-    update_velocity(
-        first, end, u, work.force_x[k], ax[now, k], ax[before, k], ax[earlier, k],
-        work.pressure_x[k], px[before, k], px[earlier, k], px[now, k], hx, forcing.wind_x, wind, forcing.drag_x, history, dt,
+    update_u(
+        first, end, u, work.force_x[k], ax[now, k], ax[before, k], ax[earlier, k], px[before, k], px[earlier, k], px[now, k],
+        P, b, d, hx, forcing.wind_x, wind, forcing.drag_x, constants, history, dt,
     )  # fmt: skip
     fill_x_face_edges(first, end, u, constants.periodic_x, constants.tangential_sign)
     transport_x(first, end, h, hx, u, constants, U)
     # On the southern wall there is no v.
     south = max(first, 3)
-    pressure_force_y(south, end, b, P, d, constants, work.pressure_y[k])
     planetary_y(south, end, hx, hy, U, forcing.coriolis, constants, work.later_turned[k], work.force_y[k])
-    update_velocity(
-        south, end, v, work.force_y[k], ay[now, k], ay[before, k], ay[earlier, k],
-        work.pressure_y[k], py[before, k], py[earlier, k], py[now, k], hy, forcing.wind_y, wind, forcing.drag_y, history, dt,
+    update_v(
+        south, end, v, work.force_y[k], ay[now, k], ay[before, k], ay[earlier, k], py[before, k], py[earlier, k], py[now, k],
+        P, b, d, hy, forcing.wind_y, wind, forcing.drag_y, constants, history, dt,
     )  # fmt: skip
     fill_y_face_edges(first, end, v, constants.periodic_x, constants.tangential_sign)
 

@@ -52,8 +52,6 @@ class Workspace(NamedTuple):
     buoyancy: Array
     pressure: Array  # P and d of the pressure force
     depth: Array
-    pressure_x: Array  # the newest pressure force
-    pressure_y: Array
     later_transport_x: Array  # U of the new u
     later_turned: Array  # f <U>/<h> at corners
 

@@ -28,9 +28,9 @@ from oceanbox.physics.momentum import (
     planetary_y,
     wind_acceleration,
 )
-from oceanbox.physics.pressure import layer_pressure, pressure_force_x, pressure_force_y
+from oceanbox.physics.pressure import layer_pressure, pressure_forces
 from oceanbox.physics.state import Constants, Forcing, Ledger, State
-from oceanbox.physics.tracers import concentration, per_thickness, tracer_flux, transport_step
+from oceanbox.physics.tracers import concentration, tracer_flux, transport_step
 from oceanbox.stepping.booking import book
 from oceanbox.stepping.forward_backward import fill_edges, wind_fraction
 from oceanbox.stepping.memory import Workspace
@@ -87,13 +87,12 @@ def empty_stages(grid: Grid, layers: int, tableau: Tableau) -> Stages:
 
 @kernel
 def content_tendency(
-    h: Array, content: Array, work: Workspace, k: int, booked: float, constants: Constants,
+    h: Array, c: Array, work: Workspace, k: int, booked: float, constants: Constants,
     advection_x: Array, advection_y: Array, mixing_x: Array, mixing_y: Array, out: Array,
 ) -> None:  # fmt: skip
     """out = -div(U c) + div(kappa_h h grad c) for one content of one layer, booked over ``booked`` seconds."""
     rows = h.shape[0]
-    per_h, c, tx, ty = work.per_thickness[k], work.temperature[k], work.tracer_x[k], work.tracer_y[k]
-    concentration(0, rows, per_h, content, c)
+    per_h, tx, ty = work.per_thickness[k], work.tracer_x[k], work.tracer_y[k]
     tracer_flux(
         2, rows - 1, h, per_h, c, work.flux_x[k], work.flux_y[k], 0.0, booked, constants,
         advection_x, advection_y, mixing_x, mixing_y, tx, ty,
@@ -121,8 +120,7 @@ def momentum_tendency(
     last = u.shape[0] - 1
     fx, fy, hx, hy = work.flux_x[k], work.flux_y[k], work.thickness_x[k], work.thickness_y[k]
     force_x, force_y, turned = work.force_x[k], work.force_y[k], work.turned[k]
-    friction(2, last - 1, u, hx, constants, force_x)
-    friction(2, last - 1, v, hy, constants, force_y)
+    friction(2, last - 1, u, v, hx, hy, constants, force_x, force_y)
     corner_terms(2, last, hx, u, v, fy, forcing.coriolis, constants, work.vorticity[k], turned)
     planetary_x(2, last - 1, hx, turned, fy, forcing.coriolis, constants, force_x)
     planetary_y(3, last - 1, hx, hy, fx, forcing.coriolis, constants, turned, force_y)
@@ -156,22 +154,22 @@ def tendency(
     for k in range(layers):
         fx, fy = work.flux_x[k], work.flux_y[k]
         hx, hy = work.thickness_x[k], work.thickness_y[k]
-        pressure_force_x(2, rows - 2, work.buoyancy[k], work.pressure[k], work.depth[k], constants, du[k])
-        pressure_force_y(2, rows - 2, work.buoyancy[k], work.pressure[k], work.depth[k], constants, dv[k])
-        per_thickness(0, rows, h[k], work.per_thickness[k])
+        pressure_forces(2, rows - 2, work.buoyancy[k], work.pressure[k], work.depth[k], constants, du[k], dv[k])
         mean_thickness(1, rows, h[k], constants, hx, hy)
         transport_x(2, rows - 1, h[k], hx, u[k], constants, fx)
         transport_y(2, rows - 1, h[k], hy, v[k], constants, fy)
         momentum_tendency(state, k, forcing, constants, wind, work, du[k], dv[k])
+        concentration(0, rows, h[k], heat[k], work.per_thickness[k], work.temperature[k])
+        concentration(0, rows, h[k], salt[k], work.per_thickness[k], work.salinity[k])
         if outflow_share(2, rows - 2, work.per_thickness[k], fx, fy, longest, constants, work.share[k]) > 0:
             ledger.limited_faces[0] += limit_outflow(2, rows - 1, rows, fx, fy, work.share[k])
         content_tendency(
-            h[k], heat[k], work, k, booked, constants, ledger.heat_advection_x[k], ledger.heat_advection_y[k],
+            h[k], work.temperature[k], work, k, booked, constants, ledger.heat_advection_x[k], ledger.heat_advection_y[k],
             ledger.heat_mixing_x[k], ledger.heat_mixing_y[k], dheat[k],
         )  # fmt: skip
         if constants.salty:
             content_tendency(
-                h[k], salt[k], work, k, booked, constants, ledger.salt_advection_x[k], ledger.salt_advection_y[k],
+                h[k], work.salinity[k], work, k, booked, constants, ledger.salt_advection_x[k], ledger.salt_advection_y[k],
                 ledger.salt_mixing_x[k], ledger.salt_mixing_y[k], dsalt[k],
             )  # fmt: skip
         book(2, rows - 1, ledger.volume_x[k], ledger.volume_y[k], fx, fy, booked)

@@ -82,8 +82,8 @@ class Flow(NamedTuple):
         """A concentration (ny, nx) after the step; ``courant_step`` 0 leaves out the Courant correction."""
         h, rows = self.thickness, len(self.thickness)
         content = h * self.grid.embed_centres(values)
-        c, fx, fy, *books = (np.zeros_like(content) for _ in range(7))
-        concentration(0, rows, 1.0 / h, content, c)
+        per_h, c, fx, fy, *books = (np.zeros_like(content) for _ in range(8))
+        concentration(0, rows, h, content, per_h, c)
         tracer_flux(
             2,
             rows - 1,
