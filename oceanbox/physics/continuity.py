@@ -34,15 +34,10 @@ def mean_thickness(first: int, end: int, h: Array, constants: Constants, hx: Arr
     depth = constants.linear_depth
     for j in range(first, end):
         here = place(j, hx.shape[0])
-        if depth > 0.0:
-            for i in range(columns):
-                hx[here, i] = depth
-                hy[here, i] = depth
-        else:
-            for n in range(columns - 1):
-                i = n + 1
-                hx[here, i] = 0.5 * (h[j, i - 1] + h[j, i])
-                hy[here, i] = 0.5 * (h[j - 1, i] + h[j, i])
+        for n in range(columns - 1):
+            i = n + 1
+            hx[here, i] = depth if depth > 0.0 else 0.5 * (h[j, i - 1] + h[j, i])
+            hy[here, i] = depth if depth > 0.0 else 0.5 * (h[j - 1, i] + h[j, i])
 
 
 @kernel

@@ -25,7 +25,7 @@ SERIES_END = 0.5
 
 
 @kernel
-def power_of_half(n: int) -> float:
+def power_of_half(n: np.int32) -> float:
     """2^-n, for 0 <= n < 1023, put together from its bits."""
     return np.int64(np.int64(BIAS - n) << np.int64(MANTISSA_BITS)).view(np.float64)
 

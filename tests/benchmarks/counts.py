@@ -4,9 +4,10 @@ A few steps run in plain Python (``NUMBA_DISABLE_JIT=1``, in a process of their 
 and written and numbers that note every operation on them.  Counts of four small grids are combined so that edges drop out: what
 remains is the cost of an interior cell, whatever the size of the grid.
 
-*Operations*: + - * and powers; divisions, comparisons, exp and log are given apart.  *Read*, *written*: elements of arrays, by
-any loop: what the first cache must serve.  *Swept in*, *swept out*: each array once for each kernel that reads it and once for
-each that writes it, which is the traffic if nothing stays in cache from one kernel to the next.
+*Operations*: + - * and powers, those of exp and log included, which are written out; divisions and comparisons are given apart.
+*Read*, *written*: elements of arrays, by any loop: what the first cache must serve.  *Swept in*, *swept out*: elements of the
+arrays of the whole basin that a step reads and writes, each once: what must come from memory and go back if nothing but the
+belts stays in cache from one step to the next.
 """
 
 from __future__ import annotations
@@ -30,11 +31,11 @@ SIZES = ((8, 7), (8, 14), (16, 7), (16, 14))
 STEP = {"numerics.step_s": 600.0}
 NEVER = 10**6
 KINDS = (
-    "operations", "divisions", "comparisons", "exp and log", "read", "written", "swept in", "swept out"
+    "operations", "divisions", "comparisons", "read", "written", "swept in", "swept out"
 )  # fmt: skip
 TALLY: Counter[str] = Counter()
-# Kernels at work, outermost first, each with the elements it has read and written.
-AT_WORK: list[tuple[set[int], set[int]]] = []
+# Addresses of the elements that the step at work has read and written.
+TOUCHED: tuple[set[int], set[int]] = (set(), set())
 
 
 @dataclass(frozen=True)
@@ -53,7 +54,7 @@ class StepCounts:
         return sum(self.per_step(name, exchange_every) for name in ("operations", "divisions"))
 
     def sweep_bytes(self, exchange_every: int) -> float:
-        """Bytes of a cell-step that go through memory if nothing stays in cache between kernels."""
+        """Bytes of a cell-step that go through memory if nothing stays in cache from one step to the next."""
         return 8.0 * sum(self.per_step(name, exchange_every) for name in ("swept in", "swept out"))
 
     def request_bytes(self, exchange_every: int) -> float:
@@ -93,14 +94,14 @@ for _name in ("lt", "le", "gt", "ge"):
 class CountedArray:
     """An array whose elements are counted when they are read or written one by one; slices are views."""
 
-    def __init__(self, values: Any) -> None:
-        self.values = values
+    def __init__(self, values: Any, whole_basin: bool) -> None:
+        self.values, self.whole_basin = values, whole_basin
         self.shape, self.size = values.shape, values.size
 
     def __getitem__(self, index: Any) -> Any:
         found = self.values[index]
         if getattr(found, "ndim", 0):
-            return CountedArray(found)
+            return CountedArray(found, self.whole_basin)
         TALLY["read"] += 1
         self._note(0, index)
         return Counted(found)
@@ -117,10 +118,10 @@ class CountedArray:
         self.values[index] = value
 
     def _note(self, which: int, index: Any) -> None:
-        if AT_WORK:
+        if self.whole_basin:
             where = self.values.__array_interface__["data"][0]
             steps = index if isinstance(index, tuple) else (index,)
-            AT_WORK[0][which].add(where + sum(i * s for i, s in zip(steps, self.values.strides, strict=True)))
+            TOUCHED[which].add(where + sum(i * s for i, s in zip(steps, self.values.strides, strict=True)))
 
     def max(self) -> Counted:
         """The largest element."""
@@ -131,41 +132,32 @@ class CountedArray:
         return len(self.values)
 
 
-def _watched(function: Callable[..., Any]) -> Callable[..., Any]:
-    """A kernel that tells the arrays when it starts and ends; the drivers of a step, which take its memory or state, do not."""
+def _close_step() -> None:
+    """Enter what the step touched."""
+    for name, addresses in zip(("swept in", "swept out"), TOUCHED, strict=True):
+        TALLY[name] += len(addresses)
+        addresses.clear()
 
-    def run(*arguments: Any) -> Any:
-        names = {type(argument).__name__ for argument in arguments}
-        if names & {"State", "Memory", "Workspace"}:
-            return function(*arguments)
-        AT_WORK.append((set(), set()))
-        result = function(*arguments)
-        read, written = AT_WORK.pop()
-        if not AT_WORK:
-            TALLY["swept in"] += len(read)
-            TALLY["swept out"] += len(written)
-        return result
+
+def _watched(function: Callable[..., Any]) -> Callable[..., Any]:
+    """A kernel as it is; the part of the step that comes first, in the first band, closes the step before."""
+    if function.__name__ != "open_band":
+        return function
+
+    def run(band: int, *arguments: Any) -> Any:
+        if band == 0:
+            _close_step()
+        return function(band, *arguments)
 
     return run
 
 
 def _watch_kernels() -> None:
-    """Put the decorator's place a counting one, and count calls of exp and its like."""
-    import math
-
+    """Put a watching decorator in the place of the compiling ones."""
     from oceanbox import compiling
 
-    for name in ("kernel", "formula"):
-        if hasattr(compiling, name):
-            setattr(compiling, name, _watched)
-    for name in ("exp", "expm1", "log1p", "sqrt"):
-        plain = getattr(math, name)
-
-        def noting(x: float, plain: Callable[[float], float] = plain) -> Counted:
-            TALLY["exp and log"] += 1
-            return Counted(plain(x))
-
-        setattr(math, name, noting)
+    for name in ("kernel", "part"):
+        setattr(compiling, name, _watched)
 
 
 def _count(state: dict[str, Any], rows: int, columns: int, exchange_every: int, steps: int) -> Counter[str]:
@@ -179,14 +171,15 @@ def _count(state: dict[str, Any], rows: int, columns: int, exchange_every: int, 
     for name, array in model.state._asdict().items():
         array[...] = state[f"{name}_{rows}_{columns}"]
 
-    def counted(group: Any) -> Any:
-        return type(group)(*(CountedArray(array) for array in group))
+    def counted(group: Any, whole_basin: bool = True) -> Any:
+        return type(group)(*(CountedArray(array, whole_basin) for array in group))
 
     TALLY.clear()
     advance_forward_backward(
         counted(model.state), counted(model.memory), counted(model.setup.forcing), model.constants, counted(model.ledger),
-        counted(model._work), 0, 3, 0.0, model.clock.dt, exchange_every, steps,
+        counted(model._work, whole_basin=False), 0, 3, 0.0, model.clock.dt, exchange_every, steps,
     )  # fmt: skip
+    _close_step()
     return Counter(TALLY)
 
 

@@ -47,12 +47,12 @@ def print_machine(machine: Machine) -> None:
 def print_counts(counts: StepCounts) -> None:
     """What a cell-step consists of."""
     print("\n### Counted from the kernels, per cell\n")
-    names = ("operations", "divisions", "comparisons", "exp and log", "read", "written", "swept in", "swept out")
+    names = ("operations", "divisions", "comparisons", "read", "written", "swept in", "swept out")
     print(head("", *names))
     for what, numbers in (("a step", counts.step), ("an exchange of the columns", counts.exchange)):
         print(row(what, *(f"{numbers[name]:.0f}" for name in names)))
     print(
-        "\nElements, 8 bytes each: read and written by any loop; swept in and out, each array once for each kernel.",
+        "\nElements, 8 bytes each: read and written by any loop; swept in and out, each array of the whole basin once a step.",
         flush=True,
     )
 

@@ -57,19 +57,21 @@ def _best_wall(kernel: Callable[..., None], arguments: tuple[Any, ...]) -> float
 
 def _heavy_loops(model: Model) -> dict[str, tuple[Any, tuple[Any, ...]]]:
     """Three kernels with their arguments; what they write goes to scratch."""
-    u, v, h = model.state.velocity_x[0], model.state.velocity_y[0], model.state.thickness[0]
-    constants, memory = model.constants, model.memory
-    transports = memory.transport_x[0, 0], memory.transport_y[0, 0]
-    scratch = [np.ones_like(u) for _ in range(4)]
-    update = forward_backward.update_velocity
+    u, h = model.state.velocity_x[0], model.state.thickness[0]
+    rows, constants, memory = len(u), model.constants, model.memory
+    U, V = memory.transport_x[0, 0], memory.transport_y[0, 0]
+    ones = [np.ones_like(u) for _ in range(8)]
+    update = forward_backward.update_u
     # The velocity update by the names of its arguments: its numbers, and an array of its own for each field.
-    numbers = {"history": 5, "dt": 1e-6, "wind": 1.0}
+    given = {"first": 2, "end": rows - 2, "history": 5, "dt": 1e-6, "wind": 1.0, "constants": constants}
     names = inspect.signature(update.py_func).parameters
-    given = tuple(numbers[name] if name in numbers else np.ones_like(u) for name in names)
+    of_update = tuple(given[name] if name in given else np.ones_like(u) for name in names)
+    q, K, du, dv, *_ = ones
+    flux = (2, rows - 1, h, *ones[:2], U, V, model.clock.dt, 1e-6, constants, *ones[2:])
     return {
-        "momentum advection": (momentum.advection, (h, u, v, *transports, constants, *scratch)),
-        "tracer flux": (tracers.tracer_flux, (h, h, *transports, model.clock.dt, constants, *scratch[:2])),
-        "velocity update": (update, given),
+        "momentum advection": (momentum.advection, (2, rows - 2, q, K, U, V, constants, du, dv)),
+        "tracer flux": (tracers.tracer_flux, flux),
+        "velocity update": (update, of_update),
     }
 
 
