@@ -2,8 +2,8 @@
 
 Before the first window that is judged the model is stepped at paces which differ from place to place and leave its steady
 states as they are (`stepping.hastened`), and `equilibrium.mixing` extrapolates what ``cycle`` of such steps do.  What either
-adds to or takes from the contents is recorded and never enters a window that is judged: afterwards the run goes on truly through the
-full criteria.  An extrapolation that a column cannot hold, or after which the change in a cycle grows, is taken back; if that
+adds to or takes from the contents is recorded and never enters a window that is judged: afterwards the run goes on truly through
+the full criteria.  An extrapolation that a column cannot hold, or after which the change in a cycle grows, is taken back; if that
 does not help, or hastened steps break down, the run goes back to its start, goes on plainly and says so.
 """
 
@@ -50,11 +50,26 @@ class SpinUpCounts:
     refusals: int = 0
     ended: bool = False
     rossby: float = ROSSBY
-    changes: list[float] = field(default_factory=list)  # root mean square change of each cycle, m, since the last refusal
+    changes: list[float] = field(
+        default_factory=list
+    )  # root mean square change of each cycle, m, since the last refusal
     first_change: float = float("inf")
     volume_added: float = 0.0  # m3, beyond what the ledger of true steps books
     heat_added: float = 0.0  # J
     salt_added: float = 0.0  # kg
+
+
+def may_be_hastened(model: Model) -> bool:
+    """Whether exchange with air and abyss decides how much water, heat and salt the basin holds in the end.
+
+    Hastened steps keep none of these.  Where nothing restores one of them each amount has an equilibrium of its own, and only
+    true steps, and extrapolations with weights that sum to one, stay with the amount they started from.
+    """
+    constants = model.constants
+    water = constants.efficiency > 0.0 or constants.outcrop_margin > 0.0
+    heat = bool((model.setup.forcing.restoring_velocity > 0.0).any())
+    salt = constants.salt_carried or not (constants.salty or model.state.salt.any())
+    return constants.linear_depth == 0.0 and water and heat and salt
 
 
 class SpinUp:
@@ -62,7 +77,7 @@ class SpinUp:
 
     def __init__(self, model: Model, memory: int, pace_limit: float) -> None:
         self.model = model
-        self.pace_limit = 1.0 if model.constants.linear_depth > 0.0 else pace_limit
+        self.pace_limit = pace_limit if may_be_hastened(model) else 1.0
         self.counts = SpinUpCounts()
         self.mixing = Mixing(memory, self._weights())
         self.beginning = self._vector()

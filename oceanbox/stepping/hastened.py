@@ -68,9 +68,7 @@ class Hastening(NamedTuple):
 def empty_hastening(grid: Grid, layers: int) -> Hastening:
     """Room for the paces of a model."""
     flat, deep = grid.shape, (layers, *grid.shape)
-    return Hastening(
-        np.ones(flat), np.ones(flat), np.ones(flat), np.zeros((3, *deep)), np.zeros(deep), np.zeros(deep)
-    )
+    return Hastening(np.ones(flat), np.ones(flat), np.ones(flat), np.zeros((3, *deep)), np.zeros(deep), np.zeros(deep))
 
 
 @kernel
