@@ -11,12 +11,19 @@ from oceanbox.config.section import CrossFault, Real, Section, Whole, choice, qu
 
 
 class Acceleration(Section):
-    """Extrapolation of the approach to equilibrium before the windows that are judged."""
+    """A way to equilibrium that need not be true, before the windows that are judged."""
 
-    lead_years: Real = quantity(1.0, "The model time before the first extrapolation.", "year", gt=0.0)
-    cycle_years: Real = quantity(0.5, "The model time between extrapolations.", "year", gt=0.0)
+    pace_limit: Real = quantity(
+        20.0,
+        "The factor by which the calmest water may be hastened on the way to equilibrium, 1 for true steps.",
+        "1",
+        ge=1.0,
+        le=100.0,
+    )
+    lead_years: Real = quantity(0.5, "The model time before the first extrapolation.", "year", gt=0.0)
+    cycle_years: Real = quantity(0.25, "The model time between extrapolations.", "year", gt=0.0)
     memory: Whole = quantity(8, "The number of earlier cycles an extrapolation uses.", "1", ge=1, le=30)
-    longest_years: Real = quantity(60.0, "The model time after which the run goes on plainly.", "year", gt=0.0)
+    longest_years: Real = quantity(8.0, "The model time after which the run goes on plainly.", "year", gt=0.0)
 
 
 class Equilibrium(Section):

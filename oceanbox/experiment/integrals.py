@@ -5,13 +5,15 @@ from typing import NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
+from oceanbox.budgets.rates import BUDGETS, budget_maps
+from oceanbox.budgets.units import Water
 from oceanbox.diagnostics.exchange import heat_exchange
 from oceanbox.diagnostics.geometry import Geometry
 from oceanbox.equilibrium import WindowMeans
 from oceanbox.experiment.model import Model
 from oceanbox.physics.state import Ledger
 
-__all__ = ["Exchanged", "contents", "exchange_series", "exchanged", "kinetic_energy", "window_means"]
+__all__ = ["Exchanged", "added_contents", "contents", "exchange_series", "exchanged", "kinetic_energy", "window_means"]
 
 Array = NDArray[np.float64]
 
@@ -25,6 +27,14 @@ def contents(model: Model) -> dict[str, float]:
         "salt_content": float(grid.centres(model.state.salt).sum()) * grid.cell_area * water.salt,
         "kinetic_energy": kinetic_energy(model),
     }
+
+
+def added_contents(model: Model) -> Array:
+    """What came into the basin since the books were opened without being in them: volume, heat and salt, (3,), in m, K m and
+    g kg-1 m summed over the cells.  Round-off, unless steps were hastened."""
+    maps = budget_maps(model.grid, model.ledger, model.opening, model.state, 1.0, Water(1.0, 1.0))
+    unit = np.array([1.0, 1.0, Water(1.0, 1.0).salt])
+    return np.array([float(maps[residual].sum()) for _, _, residual in BUDGETS.values()]) / unit
 
 
 def kinetic_energy(model: Model) -> float:

@@ -12,6 +12,7 @@ from oceanbox.errors import OceanboxError
 from oceanbox.experiment.assembly import Setup
 from oceanbox.physics.state import Constants, Ledger, State, empty_ledger
 from oceanbox.stepping.forward_backward import advance_forward_backward
+from oceanbox.stepping.hastened import Hastening, advance_hastened, empty_hastening
 from oceanbox.stepping.limits import StepLimits, step_limits
 from oceanbox.stepping.memory import Memory, belt_rows, empty_memory, empty_workspace
 from oceanbox.stepping.runge_kutta import STRONG_3, Tableau, advance_runge_kutta, empty_stages
@@ -101,6 +102,8 @@ class Model:
         rows, columns = self.grid.shape
         self._work = empty_workspace(self.grid, layers, rows if self._runge_kutta else belt_rows(columns, layers))
         self._stages = empty_stages(self.grid, layers, tableau) if self._runge_kutta else None
+        self._hastening: Hastening | None = None
+        self._pace_limit, self._rossby = 1.0, 0.0
         self.open_books()
 
     def open_books(self) -> None:
@@ -119,7 +122,12 @@ class Model:
     def advance(self, steps: int) -> None:
         """Take ``steps`` steps."""
         clock = self.clock
-        if self._stages is not None:
+        if self._hastening is not None:
+            advance_hastened(
+                self.state, self._hastening, self.setup.forcing, self.constants, self.ledger, self._work,
+                self._pace_limit, self._rossby, clock.seconds, clock.dt, steps,
+            )  # fmt: skip
+        elif self._stages is not None:
             advance_runge_kutta(
                 self.state, self._stages, self._tableau, self.setup.forcing, self.constants, self.ledger, self._work,
                 clock.seconds, clock.dt, steps,
@@ -131,6 +139,16 @@ class Model:
             )  # fmt: skip
         clock.steps += steps
         self.total_steps += steps
+
+    def hasten(self, pace_limit: float, rossby: float) -> None:
+        """From now on step towards the steady state, not truly (``stepping.hastened``, which explains the two numbers)."""
+        self._hastening = empty_hastening(self.grid, self.state.thickness.shape[0])
+        self._pace_limit, self._rossby = pace_limit, rossby
+
+    def step_truly(self) -> None:
+        """Step truly again from the present state, of which the multi-step scheme has no history."""
+        self._hastening = None
+        self.change_step(self.clock.dt)
 
     @property
     def exchange_every(self) -> int:

@@ -16,7 +16,8 @@ class Plan:
     """Intervals and ends, s.
 
     ``windows_repeat``: windows of length ``window`` follow one another from the start and each is judged; otherwise one
-    window ends with the run.  ``accelerated``: extrapolated towards equilibrium before the first window.
+    window ends with the run.  ``accelerated_until``: latest end of an accelerated approach before the first window, which
+    leaves time for the windows that equilibrium takes; 0 for none.
     """
 
     end: float
@@ -25,7 +26,7 @@ class Plan:
     sample: float
     series: float
     snapshot: float = math.inf
-    accelerated: bool = False
+    accelerated_until: float = 0.0
 
     def window_start(self) -> float:
         """Start of the window of a run with one window, s."""
@@ -36,11 +37,14 @@ def equilibrium_plan(config: Config) -> Plan:
     """Windows one after another until equilibrium or ``equilibrium.longest_years``, a whole number of windows."""
     window = config.equilibrium.window_years * SECONDS_PER_YEAR
     longest = config.equilibrium.longest_years * SECONDS_PER_YEAR
+    end = window * max(1, math.floor(longest / window + 1e-9))
+    acceleration = config.equilibrium.acceleration
+    latest = end - (config.equilibrium.windows_in_a_row + 1) * window
     return Plan(
-        end=window * max(1, math.floor(longest / window + 1e-9)),
+        end=end,
         window=window,
         windows_repeat=True,
-        accelerated=config.equilibrium.acceleration is not None,
+        accelerated_until=min(acceleration.longest_years * SECONDS_PER_YEAR, latest) if acceleration else 0.0,
         sample=config.output.sample_interval_days * SECONDS_PER_DAY,
         series=config.output.series_interval_days * SECONDS_PER_DAY,
     )

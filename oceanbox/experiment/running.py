@@ -91,7 +91,9 @@ class Run:
         # Wave speed and crossing rate for which the step was last checked.
         self._checked: tuple[float, float] = (0.0, 0.0)
         acceleration = model.setup.config.equilibrium.acceleration
-        self.spin_up = SpinUp(model, acceleration.memory) if acceleration and plan.accelerated else None
+        self.spin_up: SpinUp | None = None
+        if acceleration is not None and acceleration.lead_years * SECONDS_PER_YEAR < plan.accelerated_until:
+            self.spin_up = SpinUp(model, acceleration.memory, acceleration.pace_limit)
         self._copy_good_state()
 
     # -- the loop -----------------------------------------------------------------------------------------------------
@@ -132,7 +134,10 @@ class Run:
             return
         self.model.advance(steps)
         if not is_sound(self.model):
-            raise self._find_breakdown(steps)
+            self._rewind()
+            if not self._spin_up_survives():
+                raise self._find_breakdown(steps)
+            return
         self._keep_step_stable()
         self._copy_good_state()
 
@@ -150,8 +155,7 @@ class Run:
         if plan.snapshot < math.inf and self._is_due(counts.snapshots * plan.snapshot):
             self._take_snapshot()
         if self._spinning_up():
-            # A run that ends within the spin-up reports what its last cycle did.
-            if self._is_due(self._cycle_end()) and not self._is_due(plan.end):
+            if self._is_due(self._cycle_end()):
                 self._end_cycle()
         elif plan.windows_repeat and self._is_due(self._window_end()):
             return self._end_window()
@@ -194,22 +198,39 @@ class Run:
         """Extrapolate, or end the spin-up: then the windows that are judged begin."""
         spin_up, asked = self.spin_up, self.model.setup.config.equilibrium
         assert spin_up is not None and asked.acceleration is not None
-        told = spin_up.end_cycle(asked.acceleration.cycle_years / 10.0)
-        if told:
-            self.notes.append(f"day {self.model.clock.days:.0f}: {told}")
-        years = self.model.clock.seconds / SECONDS_PER_YEAR
-        near = spin_up.is_near(min(asked.volume_drift_per_decade, asked.heat_drift_per_decade))
-        if near or years >= asked.acceleration.longest_years:
+        tolerance = min(asked.volume_drift_per_decade, asked.heat_drift_per_decade)
+        self._note(spin_up.end_cycle(asked.acceleration.cycle_years / 10.0, tolerance))
+        if self._cycle_end() > self.plan.accelerated_until:
             spin_up.counts.ended = True
-        if spin_up.counts.ended:
+        self._after_spin_up()
+
+    def _spin_up_survives(self) -> bool:
+        """Whether the breakdown just rewound was one of hastened steps; the run can then go on."""
+        if self.spin_up is None:
+            return False
+        told = self.spin_up.survive()
+        if told:
+            self._note(told)
+            self._after_spin_up()
+        return told != ""
+
+    def _after_spin_up(self) -> None:
+        """New books for the next cycle or the first window; true steps if the spin-up has ended."""
+        assert self.spin_up is not None
+        counts = self.spin_up.counts
+        if counts.ended:
+            self.model.step_truly()
             self.counts.judged_from = self.model.clock.seconds
-            counts = spin_up.counts
-            self.notes.append(
-                f"day {self.model.clock.days:.0f}: spin-up ended after {counts.cycles} cycles; extrapolations added "
-                f"{counts.volume_added:.4g} m3 and {counts.heat_added:.4g} J, outside every window that is judged"
+            self._note(
+                f"spin-up ended after {counts.cycles} cycles; it added {counts.volume_added:.4g} m3, "
+                f"{counts.heat_added:.4g} J and {counts.salt_added:.4g} kg of salt outside every window that is judged"
             )
         self.recorder.open_window()
         self._copy_good_state()
+
+    def _note(self, told: str) -> None:
+        if told:
+            self.notes.append(f"day {self.model.clock.days:.0f}: {told}")
 
     def _window_end(self) -> float:
         return self.counts.judged_from + (self.counts.windows + 1) * self.plan.window
@@ -276,8 +297,7 @@ class Run:
         model.clock.epoch, model.clock.dt, model.clock.steps, model.total_steps = self._good_clock
 
     def _find_breakdown(self, steps: int) -> UnstableRun:
-        """Repeat the stretch that broke step by step, to name the step and the place."""
-        self._rewind()
+        """Repeat the stretch that broke, rewound, step by step, to name the step and the place."""
         for _ in range(steps):
             self._copy_good_state()
             self.model.advance(1)

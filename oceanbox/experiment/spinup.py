@@ -1,9 +1,10 @@
 """Reaching the neighbourhood of equilibrium without waiting for the ocean.
 
-The map is ``cycle`` model time of the unaltered model; `equilibrium.mixing` extrapolates it towards its fixed point.  What an
-extrapolation adds to or takes from the books is recorded and never enters a window that is judged: afterwards the run goes on
-plainly through the full criteria.  An extrapolation that a column cannot hold, or that makes the residual grow, is taken back;
-after the second the run goes on plainly and says so.
+Before the first window that is judged the model is stepped at paces which differ from place to place and leave its steady
+states as they are (`stepping.hastened`), and `equilibrium.mixing` extrapolates what ``cycle`` of such steps do.  What either
+adds to or takes from the contents is recorded and never enters a window that is judged: afterwards the run goes on truly through
+the full criteria.  An extrapolation that a column cannot hold, or after which the change in a cycle grows, is taken back; if that
+does not help, or hastened steps break down, the run goes back to its start, goes on plainly and says so.
 """
 
 from collections.abc import Mapping
@@ -14,6 +15,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from oceanbox.equilibrium.mixing import Mixing
+from oceanbox.experiment.integrals import added_contents
 from oceanbox.experiment.model import Model
 from oceanbox.grid import HALO
 
@@ -25,12 +27,19 @@ TYPICAL_ANOMALY = 20.0
 # An extrapolation may change the volume or the heat content by at most this share: larger ones can leave the branch.
 LARGEST_CHANGE = 0.06
 GROWTH_REFUSED = 2.0
-REFUSALS_BORNE = 2
-# When spin-up ends, in units of the drift per decade that still counts as equilibrium.
+REFUSALS_BORNE = 3
+# How far currents may be from geostrophy while they are slowed (`stepping.hastened.set_pace`), and after a breakdown.
+ROSSBY = 0.5
+CAUTION = 0.3
+# Spin-up ends when the true drift per decade is this share of the one that counts as equilibrium, and the change in a cycle is
+# this share of it: hastened cycles leave from a half to a tenth of what is missing, so a few of them are still missing.
 SMALL_DRIFT = 0.5
-FAIR_DRIFT = 1.2
-IDLE_JUMP = 0.1
-RECENT = 3
+SMALL_CHANGE = 0.2
+# Spin-up also ends when the change in a cycle has not fallen for so many cycles; what it has reached is kept if that is a share
+# of the first one.
+PATIENCE = 8
+FALLING = 0.9
+WORTH_KEEPING = 0.3
 
 
 @dataclass
@@ -40,21 +49,45 @@ class SpinUpCounts:
     cycles: int = 0
     refusals: int = 0
     ended: bool = False
-    smallest_residual: float = float("inf")
-    recent_jumps: list[float] = field(default_factory=list)  # relative sizes of the last extrapolations
-    volume_added: float = 0.0  # m3
+    rossby: float = ROSSBY
+    changes: list[float] = field(
+        default_factory=list
+    )  # root mean square change of each cycle, m, since the last refusal
+    first_change: float = float("inf")
+    volume_added: float = 0.0  # m3, beyond what the ledger of true steps books
     heat_added: float = 0.0  # J
+    salt_added: float = 0.0  # kg
+
+
+def may_be_hastened(model: Model) -> bool:
+    """Whether exchange with air and abyss decides how much water, heat and salt the basin holds in the end.
+
+    Hastened steps keep none of these.  Where nothing restores one of them each amount has an equilibrium of its own, and only
+    true steps, and extrapolations with weights that sum to one, stay with the amount they started from.
+    """
+    constants = model.constants
+    water = constants.efficiency > 0.0 or constants.outcrop_margin > 0.0
+    heat = bool((model.setup.forcing.restoring_velocity > 0.0).any())
+    salt = constants.salt_carried or not (constants.salty or model.state.salt.any())
+    return constants.linear_depth == 0.0 and water and heat and salt
 
 
 class SpinUp:
     """The acceleration of one model, told when a cycle has ended."""
 
-    def __init__(self, model: Model, memory: int) -> None:
+    def __init__(self, model: Model, memory: int, pace_limit: float) -> None:
         self.model = model
+        self.pace_limit = pace_limit if may_be_hastened(model) else 1.0
         self.counts = SpinUpCounts()
         self.mixing = Mixing(memory, self._weights())
-        self.argument = self._vector()
+        self.beginning = self._vector()
+        self.argument = self.beginning
         self.drift = float("inf")
+        self._hasten()
+
+    def _hasten(self) -> None:
+        if self.pace_limit > 1.0:
+            self.model.hasten(self.pace_limit, self.counts.rossby)
 
     def _weights(self) -> Array:
         """Interior thickness in metres and heat in metres of typical anomaly; velocities follow them within weeks."""
@@ -78,87 +111,118 @@ class SpinUp:
         # The multi-step scheme has no history of the new state.
         self.model.change_step(self.model.clock.dt)
 
-    def _integrals(self) -> tuple[float, float]:
+    def _integrals(self) -> Array:
+        """Volume per area, heat and salt summed over the cells, (3,), in m, K m and g kg-1 m."""
         grid, state = self.model.grid, self.model.state
-        return float(grid.centres(state.thickness).sum()), float(grid.centres(state.heat).sum())
+        return np.array([float(grid.centres(field).sum()) for field in (state.thickness, state.heat, state.salt)])
 
-    def start(self) -> None:
-        """The cycle begins at the present state."""
-        self.argument = self._vector()
-        self._before = self._integrals()
+    def end_cycle(self, decades: float, tolerance: float) -> str:
+        """A cycle of ``decades`` ended: judge it against the drift per decade that is tolerated, and extrapolate.
 
-    def end_cycle(self, decades: float) -> str:
-        """A cycle of ``decades`` ended: measure its drift and extrapolate.  Returns what to tell the person, or ''."""
-        counts = self.counts
+        The books must have been opened when it began.  Returns what to tell the person, or ''.
+        """
+        counts, model = self.counts, self.model
         counts.cycles += 1
+        before = np.array([float(model.grid.centres(content).sum()) for content in model.opening[:3]])
+        after, added = self._integrals(), added_contents(model)
+        self._record_added(added)
         if counts.cycles == 1:
             # The lead: waves from the start have left, the first cycle begins.
-            self.start()
+            self.argument = self._vector()
             return ""
-        volume, heat = self._integrals()
-        self.drift = (
-            max(abs(volume - self._before[0]) / self._before[0], abs(heat - self._before[1]) / abs(self._before[1]))
-            / decades
-        )
+        self.drift = float(np.abs((after - before - added)[:2] / before[:2]).max()) / decades
         image = self._vector()
-        residual = self.mixing.residual_norm(self.argument, image)
+        change = self.mixing.residual_norm(self.argument, image)
+        counts.first_change = min(counts.first_change, max([change, *counts.changes]))
         told = ""
-        if residual > GROWTH_REFUSED * counts.smallest_residual:
+        if counts.changes and change > GROWTH_REFUSED * min(counts.changes):
             told = self._refuse("the change in a cycle grew")
-        counts.smallest_residual = min(counts.smallest_residual, residual)
-        if not counts.ended:
-            told = self._extrapolate(image, volume, heat) or told
-        self.start()
-        return told
+        counts.changes.append(change)
+        if counts.ended:
+            return told
+        depth = float(model.thickness.sum(axis=0).mean())
+        if self.drift < SMALL_DRIFT * tolerance and change < SMALL_CHANGE * tolerance * depth:
+            counts.ended = True
+            return told
+        recent = counts.changes[-PATIENCE:]
+        if len(counts.changes) > PATIENCE and min(recent) > FALLING * min(counts.changes[:-PATIENCE]):
+            return self._give_up("the change in a cycle does not fall any more")
+        return self._extrapolate(image, after) or told
 
-    def _extrapolate(self, image: Array, volume: float, heat: float) -> str:
+    def _record_added(self, contents: Array) -> None:
+        """Enter (3,) sums over the cells into the counts."""
+        area, water = self.model.grid.cell_area, self.model.setup.water
+        self.counts.volume_added += float(contents[0]) * area
+        self.counts.heat_added += float(contents[1]) * area * water.heat
+        self.counts.salt_added += float(contents[2]) * area * water.salt
+
+    def _extrapolate(self, image: Array, contents: Array) -> str:
+        """Go on from the extrapolated state, or part of the way to it; ``contents`` are those of ``image``."""
         model = self.model
         self._put(self.mixing.next(self.argument, image))
-        new_volume, new_heat = self._integrals()
-        change = max(abs(new_volume - volume) / volume, abs(new_heat - heat) / abs(heat))
+        change = float(np.abs(self._integrals()[:2] / contents[:2] - 1.0).max())
         if change > LARGEST_CHANGE:
             # Part of the way along the same direction: affine combinations of states stay within what all of them keep.
-            share = LARGEST_CHANGE / change
-            self._put(image + share * (self._vector() - image))
-            new_volume, new_heat = self._integrals()
+            self._put(image + LARGEST_CHANGE / change * (self._vector() - image))
         floor = 0.5 * max(model.constants.floor_depth, 1.0)
+        told = ""
         if float(model.thickness.min()) < floor or float(model.grid.centres(model.state.heat).min()) < 0.0:
             self._put(image)
-            return self._refuse("a column could not hold it")
-        water, area = model.setup.water, model.grid.cell_area
-        self.counts.recent_jumps = [*self.counts.recent_jumps[1 - RECENT :], abs(new_volume - volume) / volume]
-        self.counts.volume_added += (new_volume - volume) * area
-        self.counts.heat_added += (new_heat - heat) * area * water.heat
-        return ""
-
-    def is_near(self, tolerance: float) -> bool:
-        """Whether the windows that are judged may begin; ``tolerance`` is the relative drift per decade they allow.
-
-        Either the drift is well inside it, or about there and the extrapolations no longer find anything to add.
-        """
-        jumps = self.counts.recent_jumps
-        idle = len(jumps) == RECENT and sum(jumps) / RECENT < IDLE_JUMP * tolerance
-        return self.drift < SMALL_DRIFT * tolerance or (idle and self.drift < FAIR_DRIFT * tolerance)
+            told = self._refuse("a column could not hold it")
+        self._record_added(self._integrals() - contents)
+        self.argument = self._vector()
+        return told
 
     def _refuse(self, reason: str) -> str:
+        """Forget what extrapolations are made of; after some refusals, give up."""
         self.counts.refusals += 1
-        self.counts.smallest_residual = float("inf")
+        self.counts.changes = []
         self.mixing.forget()
         if self.counts.refusals >= REFUSALS_BORNE:
-            self.counts.ended = True
-            return f"extrapolation does not help ({reason}): going on plainly"
+            return self._give_up(reason)
         return f"an extrapolation was taken back ({reason})"
+
+    def _give_up(self, reason: str) -> str:
+        """End; keep the present state if the ocean has come a good part of the way to rest, else go back to the start."""
+        self.counts.ended = True
+        changes = self.counts.changes
+        if self.pace_limit <= 1.0 or (changes and min(changes) < WORTH_KEEPING * self.counts.first_change):
+            return f"acceleration helps no further ({reason}): going on plainly"
+        self._go_back(self.beginning)
+        return f"acceleration does not help ({reason}): going on plainly from the start"
+
+    def _go_back(self, vector: Array) -> None:
+        before = self._integrals()
+        self._put(vector)
+        self._record_added(self._integrals() - before)
+
+    def survive(self) -> str:
+        """Hastened steps broke down: try with more caution from where the cycle began, at last go back to the start.
+
+        The model must have been rewound to its last sound state.  Returns what to tell the person, or '' if the model broke down
+        with true steps, which is no matter of spin-up.
+        """
+        if self.counts.ended or self.pace_limit <= 1.0:
+            return ""
+        self.mixing.forget()
+        self.counts.changes = []
+        if self.counts.rossby < ROSSBY:
+            self.counts.ended = True
+            self._go_back(self.beginning)
+            return "acceleration broke down again: going on plainly from the start"
+        self.counts.rossby *= CAUTION
+        self._go_back(self.argument)
+        self._hasten()
+        return "acceleration broke down: going on with more caution"
 
     def arrays(self) -> dict[str, Array]:
         """Everything a restart needs, by name."""
         saved = {f"spinup__image__{n}": image for n, image in enumerate(self.mixing.images)}
         saved |= {f"spinup__residual__{n}": residual for n, residual in enumerate(self.mixing.residuals)}
-        saved["spinup__argument"] = self.argument
-        saved["spinup__before"] = np.asarray(self._before)
-        return saved
+        return saved | {"spinup__argument": self.argument, "spinup__beginning": self.beginning}
 
     def restore(self, arrays: Mapping[str, Array], counts: Mapping[str, Any]) -> None:
-        """Take over the acceleration of a restart."""
+        """Take over the acceleration of a restart; the model has been restored."""
         self.counts = SpinUpCounts(**counts)
         if self.counts.ended:
             return
@@ -166,11 +230,9 @@ class SpinUp:
         for n in range(sum(name.startswith("spinup__image__") for name in arrays)):
             self.mixing.images.append(arrays[f"spinup__image__{n}"])
             self.mixing.residuals.append(arrays[f"spinup__residual__{n}"])
-        self.argument = arrays["spinup__argument"]
-        self._before = (float(arrays["spinup__before"][0]), float(arrays["spinup__before"][1]))
+        self.argument, self.beginning = arrays["spinup__argument"], arrays["spinup__beginning"]
+        self._hasten()
 
     def record(self) -> dict[str, Any]:
         """The counts, for a checkpoint."""
         return asdict(self.counts)
-
-    _before: tuple[float, float] = (1.0, 1.0)

@@ -197,7 +197,14 @@ def test_a_restored_run_would_save_the_very_restart_point_it_came_from(tmp_path:
     "acceleration",
     [
         pytest.param(None, id="plain"),
-        pytest.param({"lead_years": 0.1, "cycle_years": 0.05, "memory": 3, "longest_years": 0.2}, id="accelerated"),
+        pytest.param(
+            {"pace_limit": 1.0, "lead_years": 0.1, "cycle_years": 0.05, "memory": 3, "longest_years": 0.2},
+            id="extrapolated",
+        ),
+        pytest.param(
+            {"pace_limit": 20.0, "lead_years": 0.1, "cycle_years": 0.05, "memory": 3, "longest_years": 0.2},
+            id="hastened",
+        ),
     ],
 )
 def test_a_search_for_equilibrium_may_be_stopped_at_every_single_chance(
@@ -209,7 +216,7 @@ def test_a_search_for_equilibrium_may_be_stopped_at_every_single_chance(
             "output.sample_interval_days": 40.0,
             "output.series_interval_days": 50.0,
             "equilibrium.window_years": 0.15,
-            "equilibrium.longest_years": 0.45,
+            "equilibrium.longest_years": 0.75,
             "equilibrium.acceleration": acceleration,
         }
     )

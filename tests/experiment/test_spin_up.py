@@ -6,10 +6,18 @@ from pathlib import Path
 from typing import Any
 
 import numpy as np
+import pytest
 
+from oceanbox.budgets.rates import BUDGETS, budget_maps
 from oceanbox.config import Config
+from oceanbox.constants import SECONDS_PER_DAY
 from oceanbox.equilibrium.mixing import Mixing
 from oceanbox.experiment.api import equilibrate
+from oceanbox.experiment.assembly import assemble_setup
+from oceanbox.experiment.integrals import contents
+from oceanbox.experiment.model import Model
+from oceanbox.experiment.spinup import SpinUp
+from oceanbox.physics.state import State
 from tests.building import box_config
 
 # A basin small enough to be in equilibrium within seconds of computing, strict enough to compare states.
@@ -59,21 +67,118 @@ def test_an_accelerated_run_ends_in_the_equilibrium_of_the_plain_one(tmp_path: P
     assert float(quick.result["time"][-1]) < float(plain.result["time"][-1])
 
 
-def test_what_extrapolation_added_is_told_and_in_no_budget(tmp_path: Path) -> None:
+def test_what_acceleration_added_is_told_and_in_no_budget(tmp_path: Path) -> None:
     """Storage equals the sum of named terms in the window, and the history says what was added before it."""
     finished = equilibrate(_basin(), tmp_path)
     result = finished.result
-    assert "extrapolations added" in result.attrs["history"]
+    assert "outside every window that is judged" in result.attrs["history"]
     terms = float(np.abs(result["volume_convergence"]).sum())
     assert float(np.abs(result["volume_residual"]).max()) < 1e-9 * terms
 
 
-def test_a_run_may_end_within_its_spin_up(tmp_path: Path) -> None:
-    """When the time allowed is over before the spin-up is, that is an outcome with a result, not a crash."""
-    config = _basin(**{"equilibrium.longest_years": 3.0, "equilibrium.acceleration.cycle_years": 0.5})
+def test_what_acceleration_added_accounts_for_every_cubic_metre(tmp_path: Path) -> None:
+    """Contents after some cycles = contents at the start + what the books of true steps say + what is recorded as added."""
+    model = Model(assemble_setup(_basin()))
+    spin_up = SpinUp(model, memory=4, pace_limit=20.0)
+    steps = round(20.0 * SECONDS_PER_DAY / model.clock.dt)
+    start = contents(model)
+    booked = {"warm_water_volume": 0.0, "heat_content": 0.0}
+    water = model.setup.water
+    for _ in range(6):
+        model.open_books()
+        model.advance(steps)
+        maps = budget_maps(model.grid, model.ledger, model.opening, model.state, 1.0, water)
+        for name, budget in (("warm_water_volume", "volume"), ("heat_content", "heat")):
+            terms, _, _ = BUDGETS[budget]
+            booked[name] += sum(float(maps[term].sum()) for term in terms) * model.grid.cell_area
+        spin_up.end_cycle(20.0 / 3652.5, 0.0)
+    added = {"warm_water_volume": spin_up.counts.volume_added, "heat_content": spin_up.counts.heat_added}
+    now = contents(model)
+    for name, more in added.items():
+        assert now[name] == pytest.approx(start[name] + booked[name] + more, rel=1e-11)
+        assert abs(more) > 1e-4 * start[name]
+
+
+def test_acceleration_leaves_time_for_the_windows_that_are_judged(tmp_path: Path) -> None:
+    """A search that is given up is given up in a window of true steps, whose budget closes."""
+    config = _basin(**{"equilibrium.longest_years": 4.0, "equilibrium.acceleration.cycle_years": 0.3})
     finished = equilibrate(config, tmp_path)
     assert finished.outcome.ending.value == "not in equilibrium"
-    assert np.isfinite(finished.result["thickness"]).all()
+    assert "spin-up ended" in finished.result.attrs["history"]
+    terms = float(np.abs(finished.result["volume_convergence"]).sum())
+    assert float(np.abs(finished.result["volume_residual"]).max()) < 1e-9 * terms
+
+
+def test_without_time_for_more_than_its_windows_a_run_is_plain(tmp_path: Path) -> None:
+    """Three windows of a year in three years: bit for bit what it would be without acceleration."""
+    short = {"equilibrium.longest_years": 3.0}
+    asked = equilibrate(_basin(**short), tmp_path / "asked")
+    plain = equilibrate(_basin(**short, **{"equilibrium.acceleration": None}), tmp_path / "plain")
+    assert np.array_equal(asked.result["thickness"], plain.result["thickness"])
+
+
+def test_a_run_whose_acceleration_breaks_down_goes_on_plainly_from_its_start_and_says_so(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """Hastened steps that end in NaN, twice: the result is that of plain stepping, bit for bit."""
+
+    def breaking(state: State, *_: object) -> None:
+        state.thickness[...] = np.nan
+
+    short = {"equilibrium.longest_years": 4.0}
+    plain = equilibrate(_basin(**short, **{"equilibrium.acceleration": None}), tmp_path / "plain")
+    monkeypatch.setattr("oceanbox.experiment.model.advance_hastened", breaking)
+    broken = equilibrate(_basin(**short), tmp_path / "broken")
+    assert "acceleration broke down again: going on plainly from the start" in broken.result.attrs["history"]
+    for name in ("thickness", "temperature", "velocity_x"):
+        assert np.array_equal(broken.result[name], plain.result[name])
+
+
+def test_acceleration_that_does_not_help_is_given_up_and_says_so(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """Hastened steps that swing the ocean for ever never come to rest; the run goes back to its start and then on plainly."""
+    swing = iter(range(10**6))
+
+    def swinging(state: State, *_: object) -> None:
+        factor = 1.02 if next(swing) // 20 % 2 else 1.0 / 1.02
+        state.thickness[...] *= factor
+        state.heat[...] *= factor
+
+    monkeypatch.setattr("oceanbox.experiment.model.advance_hastened", swinging)
+    config = _basin(**{"equilibrium.longest_years": 20.0, "output.sample_interval_days": 30.0})
+    finished = equilibrate(config, tmp_path)
+    history = finished.result.attrs["history"]
+    assert "acceleration does not help" in history and "going on plainly from the start" in history
+
+
+@pytest.mark.parametrize("depth", [100.0, 150.0])
+def test_where_every_amount_of_water_has_its_equilibrium_each_run_keeps_its_own(depth: float, tmp_path: Path) -> None:
+    """Nothing makes or destroys water: equilibria for every volume, and acceleration stays with the one it starts from."""
+    closed = {
+        "entrainment": {"upwelling": None, "shoaling": None},
+        "transformation": None,
+        "outcrop": None,
+        "layers.0.initial_thickness_m": depth,
+        "equilibrium.volume_drift_per_decade": 1e-3,
+        "equilibrium.heat_drift_per_decade": 1e-3,
+        "equilibrium.heat_imbalance": 1e-3,
+    }
+    finished = equilibrate(_basin(**closed), tmp_path)
+    assert "spin-up ended" in finished.result.attrs["history"]
+    assert float(finished.result["thickness"].mean()) == pytest.approx(depth, rel=1e-10)
+
+
+@pytest.mark.parametrize("branch", [1.0, -1.0])
+def test_mixing_started_on_either_branch_stays_on_it(branch: float) -> None:
+    """x -> x + r x (1 - x^2) has stable fixed points at 1 and -1, an unstable one at 0; the slow one of 24 twins has r = 0.02."""
+    rates = np.geomspace(0.02, 0.5, 24)
+    mixing = Mixing(8, np.ones(24))
+    x = branch * np.linspace(0.6, 1.4, 24)
+    for _ in range(40):
+        image = x + rates * x * (1.0 - x**2)
+        x = mixing.next(x, image)
+    assert np.abs(x - branch).max() < 1e-3
 
 
 def test_mixing_with_full_memory_solves_a_linear_map_in_as_many_steps_as_it_has_dimensions() -> None:

@@ -73,6 +73,7 @@ CASES: dict[str, dict[str, Any]] = {
         "numerics.thickness_flux": "upwind_biased",
     },
     "linear": BUSY | LINEAR,
+    "hastened": BUSY,
 }
 
 TWO_LAYERS = "two layers"
@@ -206,6 +207,8 @@ def kernels_called_by(case: str) -> frozenset[str]:
     try:
         model = stirred(CASES[case]) if case in CASES else two_layers()
         replace_constants(model, centred_tracers=case.endswith("channel"))
+        if case == "hastened":
+            model.hasten(pace_limit=10.0, rossby=0.5)
         model.advance(STEPS)
         # A current that would empty cells brings in the limiter of thickness.
         model.state.velocity_x[...] *= 100.0
