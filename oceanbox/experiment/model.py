@@ -14,7 +14,7 @@ from oceanbox.physics.state import Constants, Ledger, State, empty_ledger
 from oceanbox.stepping.forward_backward import advance_forward_backward
 from oceanbox.stepping.hastened import Hastening, advance_hastened, empty_hastening
 from oceanbox.stepping.limits import StepLimits, step_limits
-from oceanbox.stepping.memory import Memory, belt_rows, empty_memory, empty_workspace
+from oceanbox.stepping.memory import Memory, Workspace, belt_rows, empty_memory, empty_workspace
 from oceanbox.stepping.runge_kutta import STRONG_3, Tableau, advance_runge_kutta, empty_stages
 
 __all__ = ["Clock", "Model", "choose_step", "deepest_expected", "limits_for", "warmest_anomaly"]
@@ -99,12 +99,18 @@ class Model:
         self.ledger: Ledger = empty_ledger(self.grid, layers)
         self._tableau = tableau
         self._runge_kutta = setup.config.numerics.scheme != "forward_backward"
-        rows, columns = self.grid.shape
-        self._work = empty_workspace(self.grid, layers, rows if self._runge_kutta else belt_rows(columns, layers))
-        self._stages = empty_stages(self.grid, layers, tableau) if self._runge_kutta else None
         self._hastening: Hastening | None = None
         self._pace_limit, self._rossby = 1.0, 0.0
+        self._work = self._belts()
+        self._stages = empty_stages(self.grid, layers, tableau) if self._runge_kutta else None
         self.open_books()
+
+    def _belts(self) -> Workspace:
+        """Belts of all rows, except for the scheme that sweeps in bands."""
+        rows, columns = self.grid.shape
+        layers = self.state.thickness.shape[0]
+        sweeps = self._hastening is None and not self._runge_kutta
+        return empty_workspace(self.grid, layers, belt_rows(columns, layers) if sweeps else rows)
 
     def open_books(self) -> None:
         """Start a new ledger from the present state."""
@@ -143,11 +149,13 @@ class Model:
     def hasten(self, pace_limit: float, rossby: float) -> None:
         """From now on step towards the steady state, not truly (``stepping.hastened``, which explains the two numbers)."""
         self._hastening = empty_hastening(self.grid, self.state.thickness.shape[0])
+        self._work = self._belts()
         self._pace_limit, self._rossby = pace_limit, rossby
 
     def step_truly(self) -> None:
         """Step truly again from the present state, of which the multi-step scheme has no history."""
         self._hastening = None
+        self._work = self._belts()
         self.change_step(self.clock.dt)
 
     @property

@@ -27,13 +27,23 @@ from numpy.typing import NDArray
 from oceanbox.compiling import kernel
 from oceanbox.grid import Grid
 from oceanbox.grid.edges import fill_centre_edges, fill_x_face_edges, fill_y_face_edges
-from oceanbox.physics.continuity import keep_thickness_positive, volume_transport
+from oceanbox.physics.continuity import limit_outflow, mean_thickness, outflow_share, transport_x, transport_y
+from oceanbox.physics.entrainment import mixed_layer_transport
 from oceanbox.physics.exchange import exchange
-from oceanbox.physics.momentum import advection, friction, planetary_x, planetary_y, pressure_force, wind_acceleration
+from oceanbox.physics.momentum import (
+    advection,
+    corner_terms,
+    friction,
+    kinetic_energy,
+    planetary_x,
+    planetary_y,
+    wind_acceleration,
+)
+from oceanbox.physics.pressure import layer_pressure, pressure_forces
 from oceanbox.physics.state import Constants, Forcing, Ledger, State
-from oceanbox.physics.tracers import transport_step
+from oceanbox.physics.tracers import concentration, tracer_flux, transport_step
 from oceanbox.stepping.booking import book
-from oceanbox.stepping.forward_backward import fill_layer_edges, move_tracer, wind_fraction
+from oceanbox.stepping.forward_backward import fill_edges, wind_fraction
 from oceanbox.stepping.memory import Workspace
 
 __all__ = ["Hastening", "advance_hastened", "empty_hastening"]
@@ -63,12 +73,16 @@ class Hastening(NamedTuple):
     before: Array  # (3, L, ny+4, nx+4) thickness, heat and salt before the step
     advection_x: Array  # (L, ny+4, nx+4) vorticity flux and Bernoulli gradient
     advection_y: Array
+    pressure_x: Array  # (L, ny+4, nx+4) pressure force
+    pressure_y: Array
 
 
 def empty_hastening(grid: Grid, layers: int) -> Hastening:
     """Room for the paces of a model."""
     flat, deep = grid.shape, (layers, *grid.shape)
-    return Hastening(np.ones(flat), np.ones(flat), np.ones(flat), np.zeros((3, *deep)), np.zeros(deep), np.zeros(deep))
+    return Hastening(
+        np.ones(flat), np.ones(flat), np.ones(flat), np.zeros((3, *deep)), *(np.zeros(deep) for _ in range(4))
+    )
 
 
 @kernel
@@ -96,7 +110,7 @@ def set_pace(
     state: State, forcing: Forcing, constants: Constants, work: Workspace, hastening: Hastening,
     limit: float, rossby: float, dt: float,
 ) -> None:  # fmt: skip
-    """The paces that the present flow allows; edges of the state and ``work.buoyancy`` must be filled.
+    """The paces that the present flow allows; edges of the state and ``work.buoyancy`` must be filled.  Belts hold all rows.
 
     Centres, p the smallest of
         ``limit``;
@@ -125,7 +139,7 @@ def set_pace(
                 p = min(p, SHOALING_SHARE * constants.shoaling_time / dt)
             turning = max(f_here, np.sqrt(beta * np.sqrt(c2)), 1e-9)
             pace[j, i] = min(p, np.sqrt(rossby * turning * dt / (share * max(c2 * per_speed, 0.1))))
-    fill_centre_edges(pace, constants.periodic_x)
+    fill_centre_edges(2, rows - 2, pace, constants.periodic_x)
     for j in range(2, rows - 1):
         turn = max(1.0, dt / TURN_ANGLE * max(abs(f[j]), abs(f[j + 1])))
         for i in range(2, columns - 1):
@@ -169,41 +183,72 @@ def push_at_pace(
 
 
 @kernel
+def old_forces(
+    state: State, k: int, forcing: Forcing, constants: Constants, work: Workspace, hastening: Hastening
+) -> None:
+    """Transports, friction, rotation by v and advection of layer ``k``, left in ``work`` and ``hastening``."""
+    h, u, v = state.thickness[k], state.velocity_x[k], state.velocity_y[k]
+    last = h.shape[0] - 1
+    hx, hy, fx, fy = work.thickness_x[k], work.thickness_y[k], work.flux_x[k], work.flux_y[k]
+    mean_thickness(1, last + 1, h, constants, hx, hy)
+    transport_x(2, last, h, hx, u, constants, fx)
+    transport_y(2, last, h, hy, v, constants, fy)
+    friction(2, last - 1, u, v, hx, hy, constants, work.force_x[k], work.force_y[k])
+    if constants.momentum_advection:
+        corner_terms(2, last, hx, u, v, fy, forcing.coriolis, constants, work.vorticity[k], work.turned[k])
+        kinetic_energy(1, last, u, v, work.kinetic[k])
+        advection(
+            2, last - 1, work.vorticity[k], work.kinetic[k], fx, fy, constants, hastening.advection_x[k],
+            hastening.advection_y[k],
+        )  # fmt: skip
+    planetary_x(2, last - 1, hx, work.turned[k], fy, forcing.coriolis, constants, work.force_x[k])
+
+
+@kernel
+def move_water(state: State, k: int, constants: Constants, ledger: Ledger, work: Workspace, dt: float) -> None:
+    """Step 1 for layer ``k``: volume, heat and salt move with the present transports, all booked."""
+    h, heat, salt = state.thickness[k], state.heat[k], state.salt[k]
+    rows = h.shape[0]
+    fx, fy, per_h, tx, ty = work.flux_x[k], work.flux_y[k], work.per_thickness[k], work.tracer_x[k], work.tracer_y[k]
+    concentration(0, rows, h, heat, per_h, work.temperature[k])
+    if outflow_share(2, rows - 2, per_h, fx, fy, dt, constants, work.share[k]) > 0:
+        ledger.limited_faces[0] += limit_outflow(2, rows - 1, rows, fx, fy, work.share[k])
+    tracer_flux(
+        2, rows - 1, h, per_h, work.temperature[k], fx, fy, dt, dt, constants, ledger.heat_advection_x[k],
+        ledger.heat_advection_y[k], ledger.heat_mixing_x[k], ledger.heat_mixing_y[k], tx, ty,
+    )  # fmt: skip
+    transport_step(2, rows - 2, heat, tx, ty, dt, constants)
+    if constants.salty:
+        concentration(0, rows, h, salt, per_h, work.salinity[k])
+        tracer_flux(
+            2, rows - 1, h, per_h, work.salinity[k], fx, fy, dt, dt, constants, ledger.salt_advection_x[k],
+            ledger.salt_advection_y[k], ledger.salt_mixing_x[k], ledger.salt_mixing_y[k], tx, ty,
+        )  # fmt: skip
+        transport_step(2, rows - 2, salt, tx, ty, dt, constants)
+    book(2, rows - 1, ledger.volume_x[k], ledger.volume_y[k], fx, fy, dt)
+    transport_step(2, rows - 2, h, fx, fy, dt, constants)
+
+
+@kernel
 def move_contents(
     state: State, forcing: Forcing, constants: Constants, ledger: Ledger, work: Workspace, hastening: Hastening,
     wind: float, dt: float,
 ) -> None:  # fmt: skip
-    """Steps 1 and 2; leaves the forces of rotation and advection of the old state in ``work`` and ``hastening``."""
+    """Steps 1 and 2; leaves the forces of the old state in ``work`` and ``hastening``."""
     h, heat, salt, u, v = state
     before = hastening.before
     before[0], before[1], before[2] = h, heat, salt
     for k in range(h.shape[0]):
-        hx, hy = work.thickness_x[k], work.thickness_y[k]
-        fx, fy = work.flux_x[k], work.flux_y[k]
-        volume_transport(h[k], hx, hy, u[k], v[k], constants, fx, fy)
-        planetary_x(hx, fy, forcing.coriolis, constants, work.force_x[k])
-        if constants.momentum_advection:
-            advection(
-                hx, u[k], v[k], fx, fy, constants, work.vorticity, work.kinetic,
-                hastening.advection_x[k], hastening.advection_y[k],
-            )  # fmt: skip
-        ledger.limited_faces[0] += keep_thickness_positive(h[k], fx, fy, dt, constants, work.share)
-        move_tracer(
-            h[k], heat[k], work, k, dt, constants, ledger.heat_advection_x[k], ledger.heat_advection_y[k],
-            ledger.heat_mixing_x[k], ledger.heat_mixing_y[k],
-        )  # fmt: skip
-        if constants.salty:
-            move_tracer(
-                h[k], salt[k], work, k, dt, constants, ledger.salt_advection_x[k], ledger.salt_advection_y[k],
-                ledger.salt_mixing_x[k], ledger.salt_mixing_y[k],
-            )  # fmt: skip
-        book(ledger.volume_x[k], ledger.volume_y[k], fx, fy, dt)
-        transport_step(h[k], fx, fy, dt, constants)
+        old_forces(state, k, forcing, constants, work, hastening)
+        move_water(state, k, constants, ledger, work, dt)
+    last, Mx, My = h.shape[1] - 1, work.mixed_x[0], work.mixed_y[0]
+    if constants.mixed_depth > 0.0:
+        fill_centre_edges(2, last - 1, h[0], constants.periodic_x)
+        mixed_layer_transport(2, last, h[0], u[0], v[0], forcing.shear_x, forcing.shear_y, wind, constants, Mx, My)
     exchange(
-        h[0], heat[0], salt[0], u[0], v[0], forcing, constants, wind, dt, ledger,
-        work.mixed_x, work.mixed_y, work.gain[0],
+        2, last - 1, h[0], heat[0], salt[0], forcing, constants, dt, ledger, Mx, My, work.gain[0], work.heating[0]
     )  # fmt: skip
-    fill_centre_edges(work.gain[0], constants.periodic_x)
+    fill_centre_edges(2, last - 1, work.gain[0], constants.periodic_x)
     for k in range(h.shape[0]):
         take_pace(h[k], heat[k], salt[k], before, k, hastening.pace)
 
@@ -212,30 +257,28 @@ def move_contents(
 def push_velocities(
     state: State, forcing: Forcing, constants: Constants, work: Workspace, hastening: Hastening, wind: float, dt: float
 ) -> None:
-    """Step 3 for every layer."""
+    """Step 3 for every layer; edges of thickness, heat and salt and ``work.buoyancy`` must be filled."""
     h, _, _, u, v = state
-    sign, periodic = constants.tangential_sign, constants.periodic_x
+    sign, periodic, rows = constants.tangential_sign, constants.periodic_x, h.shape[1]
     for k in range(h.shape[0]):
-        hx, hy = work.thickness_x[k], work.thickness_y[k]
+        hx, hy, fx = work.later_thickness_x[k], work.later_thickness_y[k], work.later_transport_x[k]
         force_x, force_y = work.force_x[k], work.force_y[k]
-        friction(u[k], hx, constants, force_x)
+        px, py = hastening.pressure_x[k], hastening.pressure_y[k]
+        mean_thickness(1, rows, h[k], constants, hx, hy)
+        pressure_forces(2, rows - 2, work.buoyancy[k], work.pressure[k], work.depth[k], constants, px, py)
         if k == 0:
             wind_acceleration(forcing.wind_x, hx, wind, force_x)
-        push_at_pace(
-            u[k], force_x, hastening.advection_x[k], work.pressure_x[k], forcing.drag_x, work.gain[k], hx, 1, 0,
-            hastening.pace_x, dt,
-        )  # fmt: skip
-        fill_x_face_edges(u[k], periodic, sign)
-        volume_transport(h[k], hx, hy, u[k], v[k], constants, work.flux_x[k], work.flux_y[k])
-        planetary_y(hx, hy, work.flux_x[k], forcing.coriolis, constants, force_y)
-        friction(v[k], hy, constants, force_y)
-        if k == 0:
             wind_acceleration(forcing.wind_y, hy, wind, force_y)
         push_at_pace(
-            v[k], force_y, hastening.advection_y[k], work.pressure_y[k], forcing.drag_y, work.gain[k], hy, 0, 1,
-            hastening.pace_y, dt,
+            u[k], force_x, hastening.advection_x[k], px, forcing.drag_x, work.gain[k], hx, 1, 0, hastening.pace_x, dt
         )  # fmt: skip
-        fill_y_face_edges(v[k], periodic, sign)
+        fill_x_face_edges(2, rows - 2, u[k], periodic, sign)
+        transport_x(2, rows - 2, h[k], hx, u[k], constants, fx)
+        planetary_y(3, rows - 2, hx, hy, fx, forcing.coriolis, constants, work.later_turned[k], force_y)
+        push_at_pace(
+            v[k], force_y, hastening.advection_y[k], py, forcing.drag_y, work.gain[k], hy, 0, 1, hastening.pace_y, dt
+        )  # fmt: skip
+        fill_y_face_edges(2, rows - 2, v[k], periodic, sign)
 
 
 @kernel
@@ -257,12 +300,15 @@ def advance_hastened(
     ``rossby`` bounds how far currents may be from geostrophy (`set_pace`); ``start_time`` [s] is the model time of the state,
     and a step counts as ``dt`` of it.  Not for linear dynamics.
     """
-    fill_layer_edges(state, work, constants)
+    h, heat, salt, _, _ = state
+    rows = h.shape[1]
+    fill_edges(state, constants)
+    layer_pressure(0, rows, h, heat, salt, constants, work.buoyancy, work.pressure, work.depth)
     for n in range(steps):
         if n % STEPS_OF_A_PACE == 0:
             set_pace(state, forcing, constants, work, hastening, limit, rossby, dt)
         wind = wind_fraction(start_time + (n + 0.5) * dt, constants)
         move_contents(state, forcing, constants, ledger, work, hastening, wind, dt)
-        fill_layer_edges(state, work, constants)
-        pressure_force(state.thickness, work.buoyancy, constants, work.layer_pair, work.pressure_x, work.pressure_y)
+        fill_edges(state, constants)
+        layer_pressure(0, rows, h, heat, salt, constants, work.buoyancy, work.pressure, work.depth)
         push_velocities(state, forcing, constants, work, hastening, wind, dt)
