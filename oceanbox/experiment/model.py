@@ -153,10 +153,9 @@ class Model:
         self._pace_limit, self._rossby = pace_limit, rossby
 
     def step_truly(self) -> None:
-        """Step truly again from the present state, of which the multi-step scheme has no history."""
+        """From now on step truly; a multi-step scheme that has no history of the state needs `change_step` besides."""
         self._hastening = None
         self._work = self._belts()
-        self.change_step(self.clock.dt)
 
     @property
     def exchange_every(self) -> int:

@@ -93,7 +93,9 @@ class Run:
         acceleration = model.setup.config.equilibrium.acceleration
         self.spin_up: SpinUp | None = None
         if acceleration is not None and acceleration.lead_years * SECONDS_PER_YEAR < plan.accelerated_until:
-            self.spin_up = SpinUp(model, acceleration.memory, acceleration.pace_limit)
+            asked = model.setup.config.equilibrium
+            tolerance = min(asked.volume_drift_per_decade, asked.heat_drift_per_decade)
+            self.spin_up = SpinUp(model, acceleration.memory, acceleration.pace_limit, tolerance)
         self._copy_good_state()
 
     # -- the loop -----------------------------------------------------------------------------------------------------
@@ -198,10 +200,9 @@ class Run:
         """Extrapolate, or end the spin-up: then the windows that are judged begin."""
         spin_up, asked = self.spin_up, self.model.setup.config.equilibrium
         assert spin_up is not None and asked.acceleration is not None
-        tolerance = min(asked.volume_drift_per_decade, asked.heat_drift_per_decade)
-        self._note(spin_up.end_cycle(asked.acceleration.cycle_years / 10.0, tolerance))
+        self._note(spin_up.end_cycle(asked.acceleration.cycle_years / 10.0))
         if self._cycle_end() > self.plan.accelerated_until:
-            spin_up.counts.ended = True
+            self._note(spin_up.run_out())
         self._after_spin_up()
 
     def _spin_up_survives(self) -> bool:
@@ -220,6 +221,7 @@ class Run:
         counts = self.spin_up.counts
         if counts.ended:
             self.model.step_truly()
+            self.model.change_step(self.model.clock.dt)
             self.counts.judged_from = self.model.clock.seconds
             self._note(
                 f"spin-up ended after {counts.cycles} cycles; it added {counts.volume_added:.4g} m3, "

@@ -35,8 +35,8 @@ CAUTION = 0.3
 # this share of it: hastened cycles leave from a half to a tenth of what is missing, so a few of them are still missing.
 SMALL_DRIFT = 0.5
 SMALL_CHANGE = 0.2
-# Spin-up also ends when the change in a cycle has not fallen for so many cycles; what it has reached is kept if that is a share
-# of the first one.
+# Spin-up also ends when the change in a cycle has not fallen for so many cycles.  What it has reached is kept if change and true
+# drift have fallen to a share of the first ones, or if the drift is one that counts as equilibrium: an ocean with eddies.
 PATIENCE = 8
 FALLING = 0.9
 WORTH_KEEPING = 0.3
@@ -53,7 +53,9 @@ class SpinUpCounts:
     changes: list[float] = field(
         default_factory=list
     )  # root mean square change of each cycle, m, since the last refusal
-    first_change: float = float("inf")
+    first_change: float = float("inf")  # m, and the true drift of that cycle, per decade
+    first_drift: float = float("inf")
+    drift: float = float("inf")  # of the last cycle, per decade, as true steps would have it
     volume_added: float = 0.0  # m3, beyond what the ledger of true steps books
     heat_added: float = 0.0  # J
     salt_added: float = 0.0  # kg
@@ -75,14 +77,15 @@ def may_be_hastened(model: Model) -> bool:
 class SpinUp:
     """The acceleration of one model, told when a cycle has ended."""
 
-    def __init__(self, model: Model, memory: int, pace_limit: float) -> None:
+    def __init__(self, model: Model, memory: int, pace_limit: float, tolerance: float) -> None:
+        """``tolerance`` is the relative drift per decade that counts as equilibrium; for the rest see the configuration."""
         self.model = model
+        self.tolerance = tolerance
         self.pace_limit = pace_limit if may_be_hastened(model) else 1.0
         self.counts = SpinUpCounts()
         self.mixing = Mixing(memory, self._weights())
         self.beginning = self._vector()
         self.argument = self.beginning
-        self.drift = float("inf")
         self._hasten()
 
     def _hasten(self) -> None:
@@ -116,8 +119,8 @@ class SpinUp:
         grid, state = self.model.grid, self.model.state
         return np.array([float(grid.centres(field).sum()) for field in (state.thickness, state.heat, state.salt)])
 
-    def end_cycle(self, decades: float, tolerance: float) -> str:
-        """A cycle of ``decades`` ended: judge it against the drift per decade that is tolerated, and extrapolate.
+    def end_cycle(self, decades: float) -> str:
+        """A cycle of ``decades`` ended: judge it, and extrapolate or end.
 
         The books must have been opened when it began.  Returns what to tell the person, or ''.
         """
@@ -130,10 +133,11 @@ class SpinUp:
             # The lead: waves from the start have left, the first cycle begins.
             self.argument = self._vector()
             return ""
-        self.drift = float(np.abs((after - before - added)[:2] / before[:2]).max()) / decades
+        self.counts.drift = float(np.abs((after - before - added)[:2] / before[:2]).max()) / decades
         image = self._vector()
         change = self.mixing.residual_norm(self.argument, image)
-        counts.first_change = min(counts.first_change, max([change, *counts.changes]))
+        if counts.cycles == 2:
+            counts.first_change, counts.first_drift = change, self.counts.drift
         told = ""
         if counts.changes and change > GROWTH_REFUSED * min(counts.changes):
             told = self._refuse("the change in a cycle grew")
@@ -141,7 +145,7 @@ class SpinUp:
         if counts.ended:
             return told
         depth = float(model.thickness.sum(axis=0).mean())
-        if self.drift < SMALL_DRIFT * tolerance and change < SMALL_CHANGE * tolerance * depth:
+        if self.counts.drift < SMALL_DRIFT * self.tolerance and change < SMALL_CHANGE * self.tolerance * depth:
             counts.ended = True
             return told
         recent = counts.changes[-PATIENCE:]
@@ -174,22 +178,31 @@ class SpinUp:
         return told
 
     def _refuse(self, reason: str) -> str:
-        """Forget what extrapolations are made of; after some refusals, give up."""
+        """Forget what extrapolations are made of; the second time with more caution; the third time give up."""
         self.counts.refusals += 1
         self.counts.changes = []
         self.mixing.forget()
         if self.counts.refusals >= REFUSALS_BORNE:
             return self._give_up(reason)
+        if self.counts.refusals == REFUSALS_BORNE - 1:
+            self.counts.rossby *= CAUTION
+            self._hasten()
         return f"an extrapolation was taken back ({reason})"
 
     def _give_up(self, reason: str) -> str:
         """End; keep the present state if the ocean has come a good part of the way to rest, else go back to the start."""
-        self.counts.ended = True
-        changes = self.counts.changes
-        if self.pace_limit <= 1.0 or (changes and min(changes) < WORTH_KEEPING * self.counts.first_change):
+        counts = self.counts
+        counts.ended = True
+        quiet = bool(counts.changes) and min(counts.changes) < WORTH_KEEPING * counts.first_change
+        slow = self.counts.drift < max(WORTH_KEEPING * counts.first_drift, self.tolerance)
+        if self.pace_limit <= 1.0 or (quiet and slow):
             return f"acceleration helps no further ({reason}): going on plainly"
         self._go_back(self.beginning)
         return f"acceleration does not help ({reason}): going on plainly from the start"
+
+    def run_out(self) -> str:
+        """The time for spin-up is over.  Returns what to tell the person, or ''."""
+        return "" if self.counts.ended else self._give_up("its time is over")
 
     def _go_back(self, vector: Array) -> None:
         before = self._integrals()
@@ -225,6 +238,7 @@ class SpinUp:
         """Take over the acceleration of a restart; the model has been restored."""
         self.counts = SpinUpCounts(**counts)
         if self.counts.ended:
+            self.model.step_truly()
             return
         self.mixing.forget()
         for n in range(sum(name.startswith("spinup__image__") for name in arrays)):

@@ -61,7 +61,7 @@ SHOALING_SHARE = 0.7
 # A cell changes its thickness by at most this share in one step.
 LARGEST_CHANGE = 0.1
 # The pace follows the flow every few steps.
-STEPS_OF_A_PACE = 4
+STEPS_OF_A_PACE = 15
 
 
 class Hastening(NamedTuple):
@@ -131,7 +131,8 @@ def set_pace(
     beta = abs(f[3] - f[2]) / constants.dy
     for j in range(2, rows - 2):
         f_here = 0.5 * abs(f[j] + f[j + 1])
-        for i in range(2, columns - 2):
+        for n in range(columns - 4):
+            i = n + 2
             c2 = square_of_wave_speed(h, b, j, i)
             share = share_crossing(u, v, j, i, dt / constants.dx, dt / constants.dy)
             p = min(highest, LARGEST_SHARE / share)
@@ -142,7 +143,8 @@ def set_pace(
     fill_centre_edges(2, rows - 2, pace, constants.periodic_x)
     for j in range(2, rows - 1):
         turn = max(1.0, dt / TURN_ANGLE * max(abs(f[j]), abs(f[j + 1])))
-        for i in range(2, columns - 1):
+        for n in range(columns - 3):
+            i = n + 2
             here = pace[j, i] * square_of_wave_speed(h, b, j, i)
             west = pace[j, i - 1] * square_of_wave_speed(h, b, j, i - 1)
             south = pace[j - 1, i] * square_of_wave_speed(h, b, j - 1, i)
