@@ -214,8 +214,8 @@ def _sensitivities(study: StudyData, scalar: str) -> str:
             f"together with its interactions (total). Bars: {interval or 'interval'} from the bootstrap."
         )
     return (
-        f"Elasticities of {_long_name(scalar)}: its relative change for a small relative change of each key. Bars: error from "
-        "the size of the step."
+        f"Elasticities of {_long_name(scalar)}: its relative change for a small relative change of each key, by central "
+        "differences. Error bars: error from the size of the step, a third of what halving it changes."
     )
 
 
