@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 import numpy as np
+from numpy.typing import NDArray
 
 from oceanbox.errors import UnreadableResult
 from oceanbox.figures.study_options import ScalarAgainstScalar
@@ -22,6 +23,9 @@ if TYPE_CHECKING:
 
 __all__ = ["law_against", "scalar_against_scalar"]
 
+Array = NDArray[np.float64]
+
+_LAW_POINTS = 200
 _DASHES = ((0, (4, 1.5)), (0, (1, 1.2)))
 
 
@@ -37,9 +41,8 @@ def scalar_against_scalar(ax: Axes, study: StudyData, options: ScalarAgainstScal
         draw_points(ax, points, colour, linestyle="solid" if options.joined_along is not None else "none")
     for law, dashes in zip(law_against(study, options), _DASHES, strict=False):
         if law.label:
-            ratio, depth = study.select(x[0], options.at).values.ravel(), law.depth.values.ravel()
-            order = np.argsort(ratio)
-            ax.plot(ratio[order], depth[order], color=INK, linestyle=dashes, linewidth=0.9, label=law.label, zorder=2.5)
+            ratio, depth = _smooth(study.select(x[0], options.at).values.ravel(), law.depth.values.ravel())
+            ax.plot(ratio, depth, color=INK, linestyle=dashes, linewidth=0.9, label=law.label, zorder=2.5)
     if coloured is not None:
         show_colours(ax, CaseColours.legend_of_axis(study.along(coloured), places), frame=ax)
     legend_over(ax, frame=ax)
@@ -48,6 +51,14 @@ def scalar_against_scalar(ax: Axes, study: StudyData, options: ScalarAgainstScal
     set_scale(ax, "y", options.y_scale)
     label_scalars(ax, (options.y,))
     return ax
+
+
+def _smooth(ratio: Array, depth: Array) -> tuple[Array, Array]:
+    """A law between the cases at which it is known: linear in the logarithm of the ratio, as the log law is."""
+    known = np.isfinite(ratio) & np.isfinite(depth) & (ratio > 0.0)
+    logarithm, order = np.log(ratio[known]), np.argsort(ratio[known])
+    fine = np.linspace(logarithm.min(), logarithm.max(), _LAW_POINTS)
+    return np.exp(fine), np.interp(fine, logarithm[order], depth[known][order])
 
 
 def law_against(study: StudyData, options: ScalarAgainstScalar) -> list[Law]:

@@ -34,7 +34,7 @@ TERM_WORDS = {
     "outcrop_heat": "outcrop",
     "heat_storage": "storage",
     "heat_residual": "residual",
-    "volume_convergence": "convergence",
+    "volume_convergence": "inflow",
     "entrainment_upwelling": "upwelling",
     "entrainment_diffusive": "diffusion",
     "entrainment_shoaling": "shoaling",

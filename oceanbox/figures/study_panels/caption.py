@@ -91,7 +91,7 @@ def study_sentence(study: StudyData, panel: StudyPanel) -> str:
         case BudgetBars():
             text = _bars(study, panel)
         case CaseSeries():
-            text = f"{_sentence_case(_long_name(panel.scalar))}, against model time.{_lines(study, panel)}"
+            text = f"{_sentence_case(_long_name(panel.scalar))}, against model time.{_lines(study, panel)}{_steps(study, panel)}"
         case Branches():
             text = _branches(study, panel)
         case Switches():
@@ -145,6 +145,14 @@ def _lines(study: StudyData, panel: CasePanelOptions) -> str:
     return f" One line for each of {len(cases)} cases.{colour}{dashed}"
 
 
+def _steps(study: StudyData, panel: CasePanelOptions) -> str:
+    """Why lines jump, where the way to equilibrium was shortened."""
+    accelerated = [case for case in study.cases(panel.at, panel.cases) if case.accelerated]
+    if not accelerated:
+        return ""
+    return " Their steps are extrapolations towards equilibrium, which end before the first window that is judged."
+
+
 def _maps(study: StudyData, panel: CaseMaps) -> str:
     cases, long_name = cases_shown(study, panel), names.lookup(panel.field).long_name
     axis = varying_number(cases)
@@ -154,7 +162,9 @@ def _maps(study: StudyData, panel: CaseMaps) -> str:
     by = f", for each {_axis(study, axis)}" if axis is not None else ""
     unsettled = [case.name for case in cases if not case.settled]
     reserved = f" Not in equilibrium: {', '.join(unsettled)}." if unsettled else ""
-    return f"{what}{by}.{reserved}"
+    sign = names.lookup(panel.field).sign
+    meaning = f" {_sentence_case(sign)}." if sign is not None and panel.minus_case is None else ""
+    return f"{what}{by}.{meaning}{reserved}"
 
 
 def _bars(study: StudyData, panel: BudgetBars) -> str:
