@@ -10,9 +10,11 @@ import pytest
 
 from oceanbox.figures.study_options import CaseMaps, CaseSeries, SensitivityBars
 from oceanbox.figures.study_panels.against import _smooth
-from oceanbox.figures.study_panels.caption import study_sentence
+from oceanbox.figures.study_panels.caption import study_caption, study_sentence
 from oceanbox.figures.study_panels.cases import StudyData, open_study
-from tests.synthetic_study import axes_study
+from oceanbox.names import lookup
+from tests.figures.test_study_page import page_of
+from tests.synthetic_study import MEASURE, axes_study
 
 STEPS = "extrapolations towards equilibrium"
 
@@ -56,3 +58,14 @@ def test_the_log_law_is_drawn_as_a_logarithm_between_the_cases() -> None:
 
 def test_the_error_bars_of_elasticities_are_explained(elasticities: StudyData) -> None:
     assert "a third of what halving it changes" in study_sentence(elasticities, SensitivityBars())
+
+
+def test_a_caption_tells_only_the_findings_about_what_its_page_shows(switch: StudyData) -> None:
+    shown, *others = (MEASURE, "equatorial_tilt", "tropical_heat_gain")
+    lines = [f"wind_slack: {lookup(name).long_name} from 1 to 2 m" for name in (shown, *others)]
+    general = "the start was not in equilibrium: part of each adjustment is its own drift, see the control"
+    study = StudyData(switch.dataset.assign_attrs(oceanbox_switch_findings="\n".join([*lines, general])), switch.folder)
+    text = " ".join(study_caption(study, page_of({"kind": "switches", "scalar": shown})).split())
+    assert f"Wind slack: {lookup(shown).long_name} from 1 to 2 m." in text
+    assert "The start was not in equilibrium" in text
+    assert not [name for name in others if f"{lookup(name).long_name} from 1 to 2 m" in text]

@@ -21,6 +21,7 @@ from oceanbox.figures.study_options import (
     ScalarAgainstScalar,
     ScalarAlongAxis,
     ScalarMap,
+    SensitivityBars,
     StudyPanel,
     Switches,
 )
@@ -62,10 +63,38 @@ def study_caption(study: StudyData, page: StudyPage) -> str:
         f"({letter}) {study_sentence(study, panel)}" if (letter := page.letter(index)) else study_sentence(study, panel)
         for index, panel in enumerate(page.panels)
     ]
-    found = "\n".join(str(study.dataset.attrs.get(name, "")) for name in _FINDINGS)
-    findings = [f"{_sentence_case(line)}." for line in found.splitlines() if line]
-    paragraphs = (" ".join(panels), _provenance(study), " ".join(findings))
+    paragraphs = (" ".join(panels), _provenance(study), " ".join(_findings(study, page)))
     return "\n\n".join(textwrap.fill(text, 100, break_long_words=False) for text in paragraphs if text) + "\n"
+
+
+def _findings(study: StudyData, page: StudyPage) -> list[str]:
+    """What the study found, as sentences, without what is about scalars that the page does not show."""
+    lines = "\n".join(str(study.dataset.attrs.get(name, "")) for name in _FINDINGS).splitlines()
+    shown = {name for panel in page.panels for name in _scalars_of(study, panel)}
+    hidden = set(names.in_group("scalar")) - shown
+    kept = [line for line in lines if line and (_is_about(line, shown) or not _is_about(line, hidden))]
+    return [f"{_sentence_case(_named(line))}." for line in kept]
+
+
+def _scalars_of(study: StudyData, panel: StudyPanel) -> tuple[str, ...]:
+    """The scalars whose findings belong beside a panel."""
+    match panel:
+        case Branches():
+            return (panel.scalar or measure_of(study),)
+        case Switches() | SensitivityBars():
+            return (panel.scalar,)
+        case _:
+            return ()
+
+
+def _is_about(line: str, scalars: set[str]) -> bool:
+    return any(name in line.split() or f"{name}:" in line.split() or _long_name(name) in line for name in scalars)
+
+
+def _named(line: str) -> str:
+    """A finding whose case is called as figures call it."""
+    head, colon, rest = line.partition(":")
+    return f"{shown_name(head)}{colon}{rest}" if head.count(" ") == 0 and head not in names.in_group("scalar") else line
 
 
 def study_sentence(study: StudyData, panel: StudyPanel) -> str:
