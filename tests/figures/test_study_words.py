@@ -2,16 +2,20 @@
 
 from __future__ import annotations
 
+from itertools import pairwise
 from pathlib import Path
 
 import netCDF4
 import numpy as np
 import pytest
+from matplotlib import rc_context
 
 from oceanbox.figures.study_options import CaseMaps, CaseSeries, SensitivityBars
 from oceanbox.figures.study_panels.against import _smooth
 from oceanbox.figures.study_panels.caption import study_caption, study_sentence
 from oceanbox.figures.study_panels.cases import StudyData, open_study
+from oceanbox.figures.study_panels.drawing import compose_study
+from oceanbox.figures.style import RC
 from oceanbox.names import lookup
 from tests.figures.test_study_page import page_of
 from tests.synthetic_study import MEASURE, axes_study
@@ -69,3 +73,29 @@ def test_a_caption_tells_only_the_findings_about_what_its_page_shows(switch: Stu
     assert f"Wind slack: {lookup(shown).long_name} from 1 to 2 m." in text
     assert "The start was not in equilibrium" in text
     assert not [name for name in others if f"{lookup(name).long_name} from 1 to 2 m" in text]
+
+
+@pytest.mark.parametrize("width", [60.0, 89.0, 183.0])
+def test_names_of_the_terms_of_a_budget_keep_apart(two_axes: StudyData, width: float) -> None:
+    """Level names by their boxes; slanted ones as parallel lines, a line's height (7 points) apart across them."""
+    terms = [
+        "surface_heat_flux",
+        "heat_flux_prescribed",
+        "heat_advection",
+        "heat_mixing",
+        "outcrop_heat",
+        "heat_storage",
+    ]
+    page = page_of({"kind": "budget_bars", "terms": terms}, columns=1, width_mm=width)
+    with rc_context(dict(RC)):
+        figure = compose_study(two_axes, page)
+        figure.draw_without_rendering()
+        (inner,) = figure.axes[0].child_axes
+        names = inner.get_xticklabels()
+        boxes = [name.get_window_extent() for name in names]
+        slanted = {name.get_rotation() for name in names}
+        anchors = inner.transData.transform([(0.0, 0.0), (1.0, 0.0)])
+    if slanted == {0.0}:
+        assert all(one.x1 < other.x0 for one, other in pairwise(boxes))
+    else:
+        assert (anchors[1, 0] - anchors[0, 0]) * np.sin(np.radians(slanted.pop())) > 7.0 / 72.0 * figure.dpi

@@ -291,6 +291,9 @@ def _places(study: StudyData, at: Sequence[str]) -> str:
     words = []
     for place in at:
         axis, _, value = place.partition("=")
+        if axis == "direction":
+            words.append(f"the equilibria of the way {value}")
+            continue
         unit = pretty(str(study.along(axis).attrs.get("units", "")))
         words.append(f"{_axis(study, axis)} {value} {unit}".strip())
     return f" At {_and(words)}." if at else ""

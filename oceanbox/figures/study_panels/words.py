@@ -79,7 +79,7 @@ LABELS: Final = MappingProxyType(
         "entrainment_shoaling_total": "Entrainment by shoaling",
         "entrainment_prescribed_total": "Prescribed entrainment",
         "transformation_total": "Warm water destroyed",
-        "outcrop_total": "Warm water handed over at the outcrop",
+        "outcrop_total": "Outcropping warm water",
         "exchange_imbalance": "Exchange imbalance",
         "warm_water_volume": "Warm-water volume",
         "heat_content": "Heat content",
