@@ -19,6 +19,8 @@ if TYPE_CHECKING:
 
 __all__ = ["height_points", "legend_over", "set_names", "set_scale", "slant_where_they_touch"]
 
+_SMALL, _LARGE = 1e-3, 1e5  # numbers that are written out
+_SUPERSCRIPTS = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 _STEPS = (1, 2, 5, 10)
 _NUMBERS = 9  # at most so many steps between numbers on an axis
 _MARGIN_POINTS = 48.0  # above and below axes, for the letter, the numbers and the label
@@ -37,8 +39,17 @@ def set_scale(ax: Axes, axis: Literal["x", "y"], scale: Literal["linear", "logar
         return
     getattr(ax, f"set_{axis}scale")("log")
     target.set_major_locator(LogLocator(subs=(1.0, 2.0, 5.0)))
-    target.set_major_formatter(FuncFormatter(lambda value, _: f"{value:g}"))
+    target.set_major_formatter(FuncFormatter(lambda value, _: _number(value)))
     target.set_minor_formatter(NullFormatter())
+
+
+def _number(value: float) -> str:
+    """A number on a logarithmic axis, with a power of ten where it would be long."""
+    if _SMALL <= abs(value) < _LARGE or value == 0.0:
+        return f"{value:g}"
+    mantissa, exponent = f"{value:.0e}".split("e")
+    power = str(int(exponent)).translate(_SUPERSCRIPTS)
+    return f"10{power}" if mantissa == "1" else f"{mantissa} × 10{power}"
 
 
 def set_names(ax: Axes, names: Sequence[str]) -> None:

@@ -94,7 +94,9 @@ def _is_about(line: str, scalars: set[str]) -> bool:
 def _named(line: str) -> str:
     """A finding whose case is called as figures call it."""
     head, colon, rest = line.partition(":")
-    return f"{shown_name(head)}{colon}{rest}" if head.count(" ") == 0 and head not in names.in_group("scalar") else line
+    if head in names.in_group("scalar"):
+        return f"{_long_name(head)}{colon}{rest}"
+    return line if " " in head else f"{shown_name(head)}{colon}{rest}"
 
 
 def study_sentence(study: StudyData, panel: StudyPanel) -> str:
@@ -250,7 +252,9 @@ def _sensitivities(study: StudyData, scalar: str) -> str:
         ]
         return (
             f"Sobol' indices of {_long_name(scalar)}: the share of its variance that each key causes alone (first order) and "
-            f"together with its interactions (total). Bars: {interval or 'interval'} from the bootstrap."
+            f"together with its interactions (total), as estimated from the sample; error bars: {interval or 'interval'} "
+            "from the bootstrap. An estimate for a key alone can come out above that with interactions, or below zero: that is "
+            "sampling error."
         )
     return (
         f"Elasticities of {_long_name(scalar)}: its relative change for a small relative change of each key, by central "
