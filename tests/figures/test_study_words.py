@@ -15,6 +15,7 @@ from oceanbox.figures.study_panels.against import _smooth
 from oceanbox.figures.study_panels.caption import study_caption, study_sentence
 from oceanbox.figures.study_panels.cases import StudyData, open_study
 from oceanbox.figures.study_panels.drawing import compose_study
+from oceanbox.figures.study_panels.marks import look_of_place
 from oceanbox.figures.style import RC
 from oceanbox.names import lookup
 from tests.figures.test_study_page import page_of
@@ -99,3 +100,12 @@ def test_names_of_the_terms_of_a_budget_keep_apart(two_axes: StudyData, width: f
         assert all(one.x1 < other.x0 for one, other in pairwise(boxes))
     else:
         assert (anchors[1, 0] - anchors[0, 0]) * np.sin(np.radians(slanted.pop())) > 7.0 / 72.0 * figure.dpi
+
+
+def test_lines_for_names_differ_in_grey_print_and_lines_for_numbers_in_colour_alone() -> None:
+    named = [look_of_place(["calm", "stormy"], index) for index in (0, 1)]
+    assert len({look.marker for look in named}) == len({look.linestyle for look in named}) == 2
+    assert [look.label for look in named] == ["calm", "stormy"]
+    numbered = [look_of_place([2.0, 6.0], index) for index in (0, 1)]
+    assert len({look.color for look in numbered}) == 2
+    assert {(look.linestyle, look.label) for look in numbered} == {("solid", "")}

@@ -207,7 +207,7 @@ def _bars(study: StudyData, panel: BudgetBars) -> str:
         "where the warm layer gains."
     )
     if any(TERM_WORDS[term] == "storage" for term in panel.terms):
-        text += " Storage is the sum of all others."
+        text += " Storage is the sum of all other terms of the budget."
     text += f" Colour: {_axis(study, axis)}." if axis is not None else " A bar for each case."
     return text + (" Hatched: not in equilibrium." if any(not case.settled for case in cases) else "")
 
