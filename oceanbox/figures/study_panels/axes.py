@@ -110,7 +110,7 @@ def legend_over(ax: Axes, frame: Axes) -> None:
         return
     size = float(rcParams["legend.fontsize"])
     handle = rcParams["legend.handlelength"] + rcParams["legend.handletextpad"] + rcParams["legend.columnspacing"]
-    entry = size * (handle + _PER_LETTER * max(len(label) for label in labels))
+    entry = size * handle + max(_text_points(label, size) for label in labels)
     columns = int((_SURE * width_points(frame) - _LETTER_POINTS) / entry)
     if columns == 0:  # even one is too wide: what stands in brackets goes below
         labels = [label.replace(" (", "\n(") for label in labels]
