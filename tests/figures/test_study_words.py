@@ -63,6 +63,8 @@ def test_the_log_law_is_drawn_as_a_logarithm_between_the_cases() -> None:
 
 def test_the_error_bars_of_elasticities_are_explained(elasticities: StudyData) -> None:
     assert "a third of what halving it changes" in study_sentence(elasticities, SensitivityBars())
+    text = study_caption(elasticities, page_of({"kind": "sensitivity_bars"}))
+    assert " ln " in text and "D ln " not in text  # a differential, not the beginning of a sentence
 
 
 def test_a_caption_tells_only_the_findings_about_what_its_page_shows(switch: StudyData) -> None:

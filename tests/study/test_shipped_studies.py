@@ -58,7 +58,9 @@ def reduced(path: Path, folder: Path) -> Path:
         for switch in tree["switch"]["switches"]:
             switch.pop("duration_days", None)
     if "sensitivity" in tree:
-        tree["sensitivity"] |= {"base_samples": 2, "resamples": 100}
+        keys = tree["sensitivity"].get("keys", ())[:2]
+        few = {"sobol_indices": {"base_samples": 2, "resamples": 100}, "elasticities": {"keys": keys}}
+        tree["sensitivity"] |= few[tree["sensitivity"]["kind"]]
     study = folder / path.name
     study.write_text(yaml.safe_dump(tree, sort_keys=False), encoding="utf-8")
     return study

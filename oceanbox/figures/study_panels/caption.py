@@ -73,7 +73,7 @@ def _findings(study: StudyData, page: StudyPage) -> list[str]:
     shown = {name for panel in page.panels for name in _scalars_of(study, panel)}
     hidden = set(names.in_group("scalar")) - shown
     kept = [line for line in lines if line and (_is_about(line, shown) or not _is_about(line, hidden))]
-    return [f"{_sentence_case(_named(line))}." for line in kept]
+    return [f"{line if line.startswith('d ln ') else _sentence_case(_named(line))}." for line in kept]
 
 
 def _scalars_of(study: StudyData, panel: StudyPanel) -> tuple[str, ...]:
