@@ -5,18 +5,21 @@ from __future__ import annotations
 import platform
 import textwrap
 from collections import Counter
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from importlib.metadata import version
 from math import degrees
 from pathlib import Path
+from typing import Any
 
 import oceanbox
 from oceanbox.config import Config, identity
+from oceanbox.config.showing import show
 from oceanbox.constants import EARTH_RADIUS_M
+from oceanbox.errors import ConfigError
 from oceanbox.experiment.results import REFERENCES
 from oceanbox.output.files import whole_file
 from oceanbox.output.provenance import source_commit
-from oceanbox.study.field_words import field_words, spoken
+from oceanbox.study.field_words import FIELDS, field_words, spoken
 from oceanbox.study.keys import describe, value_at
 from oceanbox.study.plan import axis_points
 from oceanbox.study.schema import Axis, Study
@@ -270,10 +273,27 @@ def _ranges(ranges: Sequence[ParameterRange], base: Config) -> str:
 
 def _axis_words(axis: Axis, base: Config) -> str:
     unit = axis.unit if axis.unit is not None else describe(base, axis.all_keys[0]).unit
+    if all(isinstance(item, str) for item in axis.positions or (0.0,)):
+        unit = ""  # names have none
     values = ", ".join(
-        item.position if isinstance(item.position, str) else f"{item.position:.6g}" for item in axis_points(axis)
+        (item.position if isinstance(item.position, str) else f"{item.position:.6g}")
+        + (f" ({_value_words(base, item.changes)})" if axis.positions is not None else "")
+        for item in axis_points(axis)
     )
     return f"{axis.long_name or axis.name} ({', '.join(axis.all_keys)}) of {values} {unit}".rstrip()
+
+
+def _value_words(base: Config, changes: Mapping[str, Any]) -> str:
+    """What the first key of a place on an axis becomes there."""
+    key, value = next(iter(changes.items()))
+    try:
+        found = value_at(base.with_changes(dict(changes)), key)
+    except ConfigError:  # the keys of other axes are needed beside it
+        return show(value)
+    unit = describe(base, key).unit
+    if isinstance(found, FIELDS):
+        return field_words(found, unit)
+    return spoken(found, unit) if isinstance(found, int | float) and not isinstance(found, bool) else show(value)
 
 
 def _outcomes(statuses: Sequence[CaseStatus]) -> str:

@@ -93,6 +93,16 @@ def test_what_a_threshold_or_sensitivity_study_does_is_stated(tmp_path: Path) ->
     assert "central differences of 0.2 in the logarithm of motion.viscosity_m2_per_s" in text
 
 
+def test_named_places_on_an_axis_are_told_with_what_the_key_becomes_there(tmp_path: Path) -> None:
+    values = [-0.05, {"points": [[-5.0, 0.0], [5.0, 0.1]]}]
+    axis = {"name": "wind", "key": WIND, "values": values, "positions": ["steady", "sheared"]}
+    text = flat(_text(tmp_path, {"axes": [axis]}))
+    assert (
+        f"Wind ({WIND}) of steady (-0.05 N m-2), sheared (linear between points of latitude (0 at -5, 0.1 at 5 degrees; N m-2))."
+        in text
+    )
+
+
 def _text(folder: Path, plan: dict[str, object]) -> str:
     loaded = study_of(folder, plan)
     return methods_text(loaded.study, loaded.base, [DONE])
