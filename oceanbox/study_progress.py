@@ -20,7 +20,7 @@ NAMES_SHOWN = 3
 
 
 def duration(seconds: float) -> str:
-    """A time in the two largest units that it has."""
+    """A time in the two largest units that it has; '?' for one that nobody knows."""
     if not math.isfinite(seconds):
         return "?"
     minutes, rest = divmod(round(seconds), 60)
@@ -41,7 +41,8 @@ def words(progress: StudyProgress) -> str:
     if progress.running:
         names = ", ".join(progress.running[:NAMES_SHOWN]) + (" …" if len(progress.running) > NAMES_SHOWN else "")
         parts.append(f"{len(progress.running)} running: {names}")
-        parts.append(f"{duration(progress.seconds_left)} left")
+        if math.isfinite(progress.seconds_left):  # before the first case has ended nobody knows
+            parts.append(f"{duration(progress.seconds_left)} left")
     return "; ".join(parts)
 
 

@@ -39,11 +39,18 @@ def _state_words(progress: "Progress") -> str:
     return words
 
 
+def _state_and_left(progress: "Progress", elapsed: float, started_at: float) -> str:
+    """What is known of the state, and of the time left; '' where nothing is known yet."""
+    left = _left(progress, elapsed, started_at)
+    known = (_state_words(progress), f"at most {left} left" if left else "")
+    return "; ".join(words for words in known if words)
+
+
 def _left(progress: "Progress", elapsed: float, started_at: float) -> str:
-    """Time left to the end of the plan at the pace so far; equilibrium may come sooner."""
+    """Time left to the end of the plan at the pace so far, '' before there is one; equilibrium may come sooner."""
     done = progress.days - started_at
     if done <= 0.0:
-        return "?"
+        return ""
     seconds = elapsed * (progress.end_days - progress.days) / done
     minutes, rest = divmod(int(seconds), 60)
     hours, minutes = divmod(minutes, 60)
@@ -68,11 +75,9 @@ class _LogLines:
         if now - self._last < LOG_SECONDS:
             return
         self._last = now
-        left = _left(progress, now - self._start, self._from)
-        tell(
-            f"year {progress.days / DAYS_PER_YEAR:.1f} of at most {progress.end_days / DAYS_PER_YEAR:g}, "
-            f"step {progress.steps}, {_state_words(progress)}; at most {left} left"
-        )
+        years, end = progress.days / DAYS_PER_YEAR, progress.end_days / DAYS_PER_YEAR
+        known = _state_and_left(progress, now - self._start, self._from)
+        tell(f"year {years:.1f} of at most {end:g}, step {progress.steps}" + (f", {known}" if known else ""))
 
 
 class _LiveLine:
@@ -91,13 +96,12 @@ class _LiveLine:
             self._note = progress.note
             self._bar.console.print(progress.note)
         years, end = progress.days / DAYS_PER_YEAR, progress.end_days / DAYS_PER_YEAR
-        left = _left(progress, time.monotonic() - self._start, self._from)
         self._bar.update(
             self._task,
             total=progress.end_days,
             completed=progress.days,
             description=f"year {years:.1f} of at most {end:g}",
-            state=f"{_state_words(progress)}; at most {left} left",
+            state=_state_and_left(progress, time.monotonic() - self._start, self._from),
         )
 
 

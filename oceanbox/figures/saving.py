@@ -14,13 +14,14 @@ from oceanbox.figures.style import RC
 from oceanbox.output.files import whole_file
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Callable, Sequence
 
     import xarray as xr
+    from matplotlib.figure import Figure
 
     from oceanbox.figures.page import Page
 
-__all__ = ["FORMATS", "Format", "save"]
+__all__ = ["FORMATS", "Format", "save", "write_figure"]
 
 Format = Literal["pdf", "png", "svg"]
 
@@ -41,21 +42,33 @@ def save(dataset: xr.Dataset, page: Page, into: Path, formats: Sequence[Format])
     Files are named <run>_<page>.<format>, the caption <run>_<page>.txt. Returns their paths, the caption last. Raises
     ValueError for an unknown format before anything is written.
     """
+    stem = f"{run_name(dataset)}_{page.name}"
+    return write_figure(stem, into, formats, lambda: compose(dataset, page), lambda: caption(dataset, page))
+
+
+def write_figure(
+    stem: str, into: Path, formats: Sequence[Format], fresh: Callable[[], Figure], words: Callable[[], str]
+) -> list[Path]:
+    """Write a figure as <stem>.<format> for each format, and its caption as <stem>.txt, which is last of the paths returned.
+
+    fresh   makes the figure, once for each file: one that is saved twice has its layout solved twice, with another result
+    words   makes the caption
+
+    The folder is made if need be. Raises ValueError for an unknown format before anything is written.
+    """
     unknown = [name for name in formats if name not in FORMATS]
     if unknown or not formats:
         raise ValueError(
             f"formats: got {list(formats)}; one or more of {', '.join(FORMATS)} are allowed; choose of these"
         )
     into.mkdir(parents=True, exist_ok=True)
-    stem = f"{run_name(dataset)}_{page.name}"
     written = []
     for name in dict.fromkeys(formats):
         path = into / f"{stem}.{name}"
         with rc_context(dict(RC)), whole_file(path) as part:
-            # A figure saved twice has its layout solved twice, with another result: a fresh one for each file.
-            compose(dataset, page).savefig(part, format=name, metadata=_METADATA[name])
+            fresh().savefig(part, format=name, metadata=_METADATA[name])
         written.append(path)
     text = into / f"{stem}.txt"
     with whole_file(text) as part:
-        part.write_text(caption(dataset, page), encoding="utf-8")
+        part.write_text(words(), encoding="utf-8")
     return [*written, text]

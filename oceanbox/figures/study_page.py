@@ -6,16 +6,14 @@ from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
 from pathlib import Path
-from typing import TYPE_CHECKING, Annotated, Any
-
-from pydantic import Field
+from typing import TYPE_CHECKING, Any
 
 from oceanbox.config.loading import Source
 from oceanbox.config.section import choice
 from oceanbox.config.validating import validate
 from oceanbox.config.yaml_tree import plain, read_tree
 from oceanbox.errors import ConfigError, Fault
-from oceanbox.figures.page import Page
+from oceanbox.figures.layout import Layout, PageName
 from oceanbox.figures.study_options import StudyPanel
 
 if TYPE_CHECKING:
@@ -26,13 +24,10 @@ if TYPE_CHECKING:
 __all__ = ["StudyPage", "axis_faults", "draw_study", "load_study_page", "study_pages"]
 
 
-class StudyPage(Page):
+class StudyPage(Layout[StudyPanel]):
     """A figure of a study, laid out as the page of a single run is: panels in reading order, filled row by row."""
 
-    name: Annotated[str, Field(pattern=r"^[a-z0-9_-]+$")] = choice("study", "The name of the page, part of file names.")
-    panels: Annotated[tuple[StudyPanel, ...], Field(min_length=1)] = Field(  # type: ignore[assignment]
-        description="The panels in reading order."
-    )
+    name: PageName = choice("study", "The name of the page, part of file names.")
 
 
 def study_pages(entries: Sequence[Mapping[str, Any] | str], folder: Path) -> tuple[StudyPage, ...]:

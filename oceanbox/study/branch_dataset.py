@@ -41,7 +41,7 @@ def branch_dataset(traced: TracedBranches[Visit], spec: BranchSpec, words: KeyWo
         variables |= _loop_variables(traced.loops, spec, key)
     coords = {
         "direction": _texts("direction", ["up", "down"], "way of the key"),
-        "parameter": _numbers("parameter", [point.parameter for point in up], key, words.sentence),
+        "parameter": _numbers("parameter", [point.parameter for point in up], key, spec.long_name or words.sentence),
     }
     attributes = {
         "oceanbox_branch_key": spec.key,

@@ -16,7 +16,10 @@ from oceanbox.config.fields import (
     TropicsToPole,
 )
 
-__all__ = ["field_words", "spoken"]
+__all__ = ["FIELDS", "field_words", "spoken"]
+
+FIELDS = (Band, Cosine, FileField, Gaussian, Linear, Points, SumOfFields, TropicsToPole)
+"""All kinds of fields that are more than one number."""
 
 _SPOKEN = {"1": "", "degree": "degrees", "year": "years", "day-1": "per day"}
 

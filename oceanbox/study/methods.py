@@ -5,22 +5,26 @@ from __future__ import annotations
 import platform
 import textwrap
 from collections import Counter
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from importlib.metadata import version
 from math import degrees
 from pathlib import Path
+from typing import Any
 
 import oceanbox
 from oceanbox.config import Config, identity
+from oceanbox.config.showing import show
 from oceanbox.constants import EARTH_RADIUS_M
+from oceanbox.errors import ConfigError
 from oceanbox.experiment.results import REFERENCES
 from oceanbox.output.files import whole_file
 from oceanbox.output.provenance import source_commit
-from oceanbox.study.field_words import field_words, spoken
+from oceanbox.study.field_words import FIELDS, field_words, spoken
 from oceanbox.study.keys import describe, value_at
 from oceanbox.study.plan import axis_points
 from oceanbox.study.schema import Axis, Study
 from oceanbox.study.status import CaseStatus, State
+from oceanbox.study.threshold_specs import ElasticitiesSpec, ParameterRange, SobolIndicesSpec
 
 __all__ = ["methods_text", "write_methods"]
 
@@ -184,9 +188,14 @@ def _ending(study: Study, base: Config) -> str:
     ask = base.equilibrium
     if study.command == "evolve" or study.switch is not None:
         days = study.switch.duration_days if study.switch is not None else base.evolve.duration_days
-        return f"Each case ran for {days:g} days; window means are over its last {ask.window_years:g} years at most."
+        others = [case for case in (study.switch.switches if study.switch is not None else ()) if case.duration_days]
+        told = f" ({', '.join(f'{case.name} for {case.duration_days:g} days' for case in others)})" if others else ""
+        return (
+            f"Each case ran for {days:g} days{told}; window means are over its last {ask.window_years:g} years at most."
+        )
+    which = "approach to the first equilibrium alone" if study.branch is not None else "approach"
     spin_up = (
-        " The approach was shortened by extrapolation (Anderson 1965), which ends before the first window that is judged."
+        f" The {which} was shortened by extrapolation (Anderson 1965), which ends before the first window that is judged."
         if ask.acceleration is not None
         else ""
     )
@@ -206,10 +215,7 @@ def _varied(study: Study, base: Config) -> str:
         text = f"All combinations of {text}." if len(study.axes) > 1 else f"{text[0].upper()}{text[1:]}."
     elif study.sample is not None:
         kind = "Latin hypercube" if study.sample.method == "latin_hypercube" else "scrambled Sobol' sequence"
-        ranges = "; ".join(
-            f"{item.key} from {item.lowest:g} to {spoken(item.highest, describe(base, item.key).unit)} ({item.scale})"
-            for item in study.sample.ranges
-        )
+        ranges = _ranges(study.sample.ranges, base)
         text = f"{study.sample.count} cases of a {kind} (seed {study.sample.seed}) over {ranges}."
     elif study.cases is not None:
         text = "Cases were: " + "; ".join(
@@ -238,15 +244,56 @@ def _plan_words(study: Study, base: Config) -> str:
     if study.switch is not None:
         names = ", ".join(case.name for case in study.switch.switches)
         return f"from one equilibrium, one thing was changed at time zero: {names}"
-    return "the sensitivity of " + ", ".join(study.sensitivity.measures if study.sensitivity else ())
+    return _sensitivity_words(study, base)
+
+
+def _sensitivity_words(study: Study, base: Config) -> str:
+    spec = study.sensitivity
+    if isinstance(spec, SobolIndicesSpec):
+        return (
+            f"Sobol' indices of {', '.join(spec.measures)} by the estimators of Saltelli et al. (2010, first order) and Jansen "
+            f"(1999, total) from {spec.base_samples} base points of a scrambled Sobol' sequence (seed {spec.seed}), with "
+            f"{100 * spec.confidence:g} % intervals from {spec.resamples} bootstrap resamples, over "
+            f"{_ranges(spec.ranges, base)}"
+        )
+    if isinstance(spec, ElasticitiesSpec):
+        return (
+            f"elasticities of {', '.join(spec.measures)} by central differences of {spec.relative_step:g} in the logarithm of "
+            f"{', '.join(spec.keys)}, and of half that step as a check"
+        )
+    return ""
+
+
+def _ranges(ranges: Sequence[ParameterRange], base: Config) -> str:
+    return "; ".join(
+        f"{item.key} from {item.lowest:g} to {spoken(item.highest, describe(base, item.key).unit)} ({item.scale})"
+        for item in ranges
+    )
 
 
 def _axis_words(axis: Axis, base: Config) -> str:
     unit = axis.unit if axis.unit is not None else describe(base, axis.all_keys[0]).unit
+    if all(isinstance(item, str) for item in axis.positions or (0.0,)):
+        unit = ""  # names have none
     values = ", ".join(
-        item.position if isinstance(item.position, str) else f"{item.position:.6g}" for item in axis_points(axis)
+        (item.position if isinstance(item.position, str) else f"{item.position:.6g}")
+        + (f" ({_value_words(base, item.changes)})" if axis.positions is not None else "")
+        for item in axis_points(axis)
     )
     return f"{axis.long_name or axis.name} ({', '.join(axis.all_keys)}) of {values} {unit}".rstrip()
+
+
+def _value_words(base: Config, changes: Mapping[str, Any]) -> str:
+    """What the first key of a place on an axis becomes there."""
+    key, value = next(iter(changes.items()))
+    try:
+        found = value_at(base.with_changes(dict(changes)), key)
+    except ConfigError:  # the keys of other axes are needed beside it
+        return show(value)
+    unit = describe(base, key).unit
+    if isinstance(found, FIELDS):
+        return field_words(found, unit)
+    return spoken(found, unit) if isinstance(found, int | float) and not isinstance(found, bool) else show(value)
 
 
 def _outcomes(statuses: Sequence[CaseStatus]) -> str:

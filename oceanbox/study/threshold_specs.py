@@ -89,6 +89,7 @@ class BranchSpec(Section):
     """One key moved up step by step and then down, each run started from the previous equilibrium."""
 
     key: str = _text("The dotted key of the base configuration that is moved.")
+    long_name: str = choice("", "What the key is, in words, for tables and figures; its own sentence when empty.")
     lowest: Real = required_quantity("The value of the key where the way up starts, in the key's unit.")
     highest: Real = required_quantity("The value of the key where the way down starts, in the key's unit.")
     steps: Whole = quantity(10, "The number of equal steps from lowest to highest.", ge=2, le=1000)

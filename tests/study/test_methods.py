@@ -74,6 +74,40 @@ def test_a_sample_and_a_warm_start_are_stated(tmp_path: Path) -> None:
     assert "can hide that there is more than one equilibrium" in text
 
 
+def test_what_a_threshold_or_sensitivity_study_does_is_stated(tmp_path: Path) -> None:
+    """Extrapolation ends where a branch begins; runs of other lengths are named; ranges and steps are told."""
+    branch = {"key": WIND, "lowest": -0.05, "highest": -0.03}
+    text = flat(_text(tmp_path, {"command": "equilibrate", "branch": branch}))
+    assert "The approach to the first equilibrium alone was shortened by extrapolation" in text
+    switches = [{"name": "a", "changes": {WIND: -0.02}, "duration_days": 50.0}, {"name": "b", "changes": {WIND: -0.01}}]
+    switch = {"switches": switches, "duration_days": 100.0, "series_interval_days": 1.0}
+    text = flat(_text(tmp_path, {"command": "equilibrate", "switch": switch}))
+    assert "Each case ran for 100 days (a for 50 days)" in text
+    ranges = [
+        {"key": key, "lowest": 0.5, "highest": 2.0} for key in (TARGET, "entrainment.upwelling.shear_damping_per_day")
+    ]
+    text = flat(_text(tmp_path, {"sensitivity": {"kind": "sobol_indices", "ranges": ranges, "base_samples": 4}}))
+    assert "from 4 base points" in text and f"{TARGET} from 0.5 to 2 degC (linear)" in text
+    spec = {"kind": "elasticities", "keys": ["motion.viscosity_m2_per_s"], "relative_step": 0.2}
+    text = flat(_text(tmp_path, {"sensitivity": spec}))
+    assert "central differences of 0.2 in the logarithm of motion.viscosity_m2_per_s" in text
+
+
+def test_named_places_on_an_axis_are_told_with_what_the_key_becomes_there(tmp_path: Path) -> None:
+    values = [-0.05, {"points": [[-5.0, 0.0], [5.0, 0.1]]}]
+    axis = {"name": "wind", "key": WIND, "values": values, "positions": ["steady", "sheared"]}
+    text = flat(_text(tmp_path, {"axes": [axis]}))
+    assert (
+        f"Wind ({WIND}) of steady (-0.05 N m-2), sheared (linear between points of latitude (0 at -5, 0.1 at 5 degrees; N m-2))."
+        in text
+    )
+
+
+def _text(folder: Path, plan: dict[str, object]) -> str:
+    loaded = study_of(folder, plan)
+    return methods_text(loaded.study, loaded.base, [DONE])
+
+
 def test_every_shipped_configuration_has_a_methods_section() -> None:
     from oceanbox.config import load
     from oceanbox.study.schema import Study

@@ -164,6 +164,32 @@ def test_a_stopped_study_saves_its_cases_and_ends_with_the_results_of_one_that_w
     assert_same_results(into, tmp_path / "straight", 2)
 
 
+def test_a_study_killed_outright_is_gone_on_with_by_the_same_command_and_ends_as_if_nothing_had_happened(
+    tmp_path: Path,
+) -> None:
+    """`kill -9` of the study while one case is done and the next ones run: the done one stays, the others are the same."""
+    plan = {"axes": [TARGETS | {"values": [15.0, 20.0, 25.0]}], "changes": {"evolve.duration_days": 800.0}}
+    study, into = write_study(tmp_path, plan), tmp_path / "results"
+    cases = study_of(tmp_path, plan).cases
+    process = start_study(study, into)
+    try:
+        wait_until(lambda: any(status_of(case, into).state is State.DONE for case in cases), "the first case")
+        assert process.poll() is None
+        workers = children_of(process.pid)
+    finally:
+        process.kill()
+        process.wait()
+    wait_until(lambda: not any(map(alive, workers)), "the end of the workers")
+    done = [case for case in cases if status_of(case, into).state is State.DONE]
+    written = {case.name: (folder_of(case, into) / "result.nc").stat().st_mtime_ns for case in done}
+    assert 1 <= len(done) < 3
+    again = start_study(study, into)
+    assert again.wait(PATIENCE) == 0
+    assert {case.name: (folder_of(case, into) / "result.nc").stat().st_mtime_ns for case in done} == written
+    execute(cases, tmp_path / "straight", HereEngine())
+    assert_same_results(into, tmp_path / "straight", 3)
+
+
 def test_a_folder_in_which_a_study_runs_is_refused_to_another_one(tmp_path: Path) -> None:
     with (
         alone_in(tmp_path),

@@ -12,7 +12,7 @@ from oceanbox.figures.study_options import DEPTH, ScalarAlongAxis
 from oceanbox.figures.study_panels.axes import legend_over, set_names, set_scale
 from oceanbox.figures.study_panels.cases import StudyData
 from oceanbox.figures.study_panels.laws import Law, configured_log_law, fitted_log_law, scale_law
-from oceanbox.figures.study_panels.marks import CaseColours, axis_label, show_colours
+from oceanbox.figures.study_panels.marks import MARKERS, CaseColours, Look, axis_label, look_of_place, show_colours
 from oceanbox.figures.study_panels.points import (
     draw_points,
     groups,
@@ -31,7 +31,7 @@ if TYPE_CHECKING:
 __all__ = ["label_scalars", "law_along", "scalar_along_axis", "second_axis"]
 
 _LAW_DASHES = (0, (4, 1.5))
-_MARKERS = "osD^vP"
+UNSAID = "_nolegend_"
 
 
 def scalar_along_axis(ax: Axes, study: StudyData, options: ScalarAlongAxis) -> Axes:
@@ -48,14 +48,21 @@ def scalar_along_axis(ax: Axes, study: StudyData, options: ScalarAlongAxis) -> A
     law = law_along(study, options)
     dashes = "none" if (law is not None and law.label) or not is_ordered(along) else None
     labels = _labels(options.scalars)
-    for name, line, marker in zip(options.scalars, LINES, _MARKERS, strict=False):
+    for name, line, marker in zip(options.scalars, LINES, MARKERS, strict=False):
         y = scalar_of(study, name), spread_of(study, name, options.spread)
         for place, points in groups(study, (positions(study, axis), None), y, _names(along.dims), options.at):
-            colour = CaseColours.of_places(places)[places[place[other]]] if other is not None else line.color
-            draw_points(ax, points, colour, label=labels[name], linestyle=dashes or line.linestyle, marker=marker)
+            look = Look(*line, marker, labels[name]) if other is None else look_of_place(places, place[other])
+            draw_points(
+                ax,
+                points,
+                look.color,
+                label=look.label or UNSAID,
+                linestyle=dashes or look.linestyle,
+                marker=look.marker,
+            )
     if law is not None and law.label:
         _draw_law(ax, study, law, options, axis)
-    if other is not None:
+    if other is not None and isinstance(places[0], float):
         show_colours(ax, CaseColours.legend_of_axis(study.along(other), places), frame=ax)
     legend_over(ax, frame=ax)
     _finish(ax, study, options, axis)

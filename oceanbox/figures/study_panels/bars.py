@@ -9,8 +9,9 @@ from matplotlib.ticker import MaxNLocator
 
 from oceanbox import names
 from oceanbox.errors import UnreadableResult
-from oceanbox.figures.axes import label_y, mark_zero, split
+from oceanbox.figures.axes import label_y, mark_zero, split, width_points
 from oceanbox.figures.study_options import BudgetBars
+from oceanbox.figures.study_panels.axes import slant_where_they_touch
 from oceanbox.figures.study_panels.cases import StudyData
 from oceanbox.figures.study_panels.marks import CaseColours, show_colours
 from oceanbox.figures.study_panels.words import drawn, label_of
@@ -34,7 +35,7 @@ TERM_WORDS = {
     "outcrop_heat": "outcrop",
     "heat_storage": "storage",
     "heat_residual": "residual",
-    "volume_convergence": "convergence",
+    "volume_convergence": "inflow",
     "entrainment_upwelling": "upwelling",
     "entrainment_diffusive": "diffusion",
     "entrainment_shoaling": "shoaling",
@@ -87,7 +88,9 @@ def budget_bars(ax: Axes, study: StudyData, options: BudgetBars) -> Axes:
         inner.set_ylim(low, high + _HEADROOM * len(frames) * (high - low))
         inner.text(0.99, 0.94, words[:1].upper() + words[1:], transform=inner.transAxes, ha="right", va="top")
         label_y(inner, label_of("Gain", unit))
-    frames[-1].set_xticks(centres, [TERM_WORDS[term] for term in options.terms])
+    terms = [TERM_WORDS[term] for term in options.terms]
+    frames[-1].set_xticks(centres, terms)
+    slant_where_they_touch(frames[-1], terms, width_points(ax))
     show_colours(frames[0], CaseColours.legend_of_cases(study, cases), frame=ax)
     return ax
 

@@ -21,6 +21,7 @@ from oceanbox.figures.study_options import (
     ScalarAgainstScalar,
     ScalarAlongAxis,
     ScalarMap,
+    SensitivityBars,
     StudyPanel,
     Switches,
 )
@@ -62,10 +63,40 @@ def study_caption(study: StudyData, page: StudyPage) -> str:
         f"({letter}) {study_sentence(study, panel)}" if (letter := page.letter(index)) else study_sentence(study, panel)
         for index, panel in enumerate(page.panels)
     ]
-    found = "\n".join(str(study.dataset.attrs.get(name, "")) for name in _FINDINGS)
-    findings = [f"{_sentence_case(line)}." for line in found.splitlines() if line]
-    paragraphs = (" ".join(panels), _provenance(study), " ".join(findings))
+    paragraphs = (" ".join(panels), _provenance(study), " ".join(_findings(study, page)))
     return "\n\n".join(textwrap.fill(text, 100, break_long_words=False) for text in paragraphs if text) + "\n"
+
+
+def _findings(study: StudyData, page: StudyPage) -> list[str]:
+    """What the study found, as sentences, without what is about scalars that the page does not show."""
+    lines = "\n".join(str(study.dataset.attrs.get(name, "")) for name in _FINDINGS).splitlines()
+    shown = {name for panel in page.panels for name in _scalars_of(study, panel)}
+    hidden = set(names.in_group("scalar")) - shown
+    kept = [line for line in lines if line and (_is_about(line, shown) or not _is_about(line, hidden))]
+    return [f"{line if line.startswith('d ln ') else _sentence_case(_named(line))}." for line in kept]
+
+
+def _scalars_of(study: StudyData, panel: StudyPanel) -> tuple[str, ...]:
+    """The scalars whose findings belong beside a panel."""
+    match panel:
+        case Branches():
+            return (panel.scalar or measure_of(study),)
+        case Switches() | SensitivityBars():
+            return (panel.scalar,)
+        case _:
+            return ()
+
+
+def _is_about(line: str, scalars: set[str]) -> bool:
+    return any(name in line.split() or f"{name}:" in line.split() or _long_name(name) in line for name in scalars)
+
+
+def _named(line: str) -> str:
+    """A finding whose case is called as figures call it."""
+    head, colon, rest = line.partition(":")
+    if head in names.in_group("scalar"):
+        return f"{_long_name(head)}{colon}{rest}"
+    return line if " " in head else f"{shown_name(head)}{colon}{rest}"
 
 
 def study_sentence(study: StudyData, panel: StudyPanel) -> str:
@@ -91,7 +122,7 @@ def study_sentence(study: StudyData, panel: StudyPanel) -> str:
         case BudgetBars():
             text = _bars(study, panel)
         case CaseSeries():
-            text = f"{_sentence_case(_long_name(panel.scalar))}, against model time.{_lines(study, panel)}"
+            text = f"{_sentence_case(_long_name(panel.scalar))}, against model time.{_lines(study, panel)}{_steps(study, panel)}"
         case Branches():
             text = _branches(study, panel)
         case Switches():
@@ -145,6 +176,14 @@ def _lines(study: StudyData, panel: CasePanelOptions) -> str:
     return f" One line for each of {len(cases)} cases.{colour}{dashed}"
 
 
+def _steps(study: StudyData, panel: CasePanelOptions) -> str:
+    """Why lines jump, where the way to equilibrium was shortened."""
+    accelerated = [case for case in study.cases(panel.at, panel.cases) if case.accelerated]
+    if not accelerated:
+        return ""
+    return " Their steps are extrapolations towards equilibrium, which end before the first window that is judged."
+
+
 def _maps(study: StudyData, panel: CaseMaps) -> str:
     cases, long_name = cases_shown(study, panel), names.lookup(panel.field).long_name
     axis = varying_number(cases)
@@ -154,7 +193,9 @@ def _maps(study: StudyData, panel: CaseMaps) -> str:
     by = f", for each {_axis(study, axis)}" if axis is not None else ""
     unsettled = [case.name for case in cases if not case.settled]
     reserved = f" Not in equilibrium: {', '.join(unsettled)}." if unsettled else ""
-    return f"{what}{by}.{reserved}"
+    sign = names.lookup(panel.field).sign
+    meaning = f" {_sentence_case(sign)}." if sign is not None and panel.minus_case is None else ""
+    return f"{what}{by}.{meaning}{reserved}"
 
 
 def _bars(study: StudyData, panel: BudgetBars) -> str:
@@ -166,7 +207,7 @@ def _bars(study: StudyData, panel: BudgetBars) -> str:
         "where the warm layer gains."
     )
     if any(TERM_WORDS[term] == "storage" for term in panel.terms):
-        text += " Storage is the sum of all others."
+        text += " Storage is the sum of all other terms of the budget."
     text += f" Colour: {_axis(study, axis)}." if axis is not None else " A bar for each case."
     return text + (" Hatched: not in equilibrium." if any(not case.settled for case in cases) else "")
 
@@ -211,11 +252,13 @@ def _sensitivities(study: StudyData, scalar: str) -> str:
         ]
         return (
             f"Sobol' indices of {_long_name(scalar)}: the share of its variance that each key causes alone (first order) and "
-            f"together with its interactions (total). Bars: {interval or 'interval'} from the bootstrap."
+            f"together with its interactions (total), as estimated from the sample; error bars: {interval or 'interval'} "
+            "from the bootstrap. An estimate for a key alone can come out above that with interactions, or below zero: that is "
+            "sampling error."
         )
     return (
-        f"Elasticities of {_long_name(scalar)}: its relative change for a small relative change of each key. Bars: error from "
-        "the size of the step."
+        f"Elasticities of {_long_name(scalar)}: its relative change for a small relative change of each key, by central "
+        "differences. Error bars: error from the size of the step, a third of what halving it changes."
     )
 
 
@@ -252,6 +295,9 @@ def _places(study: StudyData, at: Sequence[str]) -> str:
     words = []
     for place in at:
         axis, _, value = place.partition("=")
+        if axis == "direction":
+            words.append(f"the equilibria of the way {value}")
+            continue
         unit = pretty(str(study.along(axis).attrs.get("units", "")))
         words.append(f"{_axis(study, axis)} {value} {unit}".strip())
     return f" At {_and(words)}." if at else ""

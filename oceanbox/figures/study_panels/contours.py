@@ -45,14 +45,15 @@ def scalar_map(ax: Axes, study: StudyData, options: ScalarMap) -> Axes:
     levels = _levels(values, options)
     filled = ax.contourf(x, y, values, levels=levels, cmap=_colours(options.scalar), extend=extend_of(values, levels))
     lines = ax.contour(x, y, values, levels=levels, colors=INK, linewidths=0.4)
-    texts = ax.clabel(lines, levels=list(levels[1::2]), fontsize=6.0, fmt="%g", inline_spacing=2)
+    # Not in line: a number that is taken away again would leave a gap.
+    texts = ax.clabel(lines, levels=list(levels[1::2]), fontsize=6.0, fmt="%g", inline=False)
     _dots(ax, study, x_axis, y_axis, options)
     set_scale(ax, "x", options.x_scale)
     set_scale(ax, "y", options.y_scale)
     ax.set_xlabel(axis_label(study.along(x_axis)))
     ax.set_ylabel(axis_label(study.along(y_axis)))
     for text in texts:
-        text.set_path_effects([withStroke(linewidth=1.5, foreground="white")])
+        text.set_path_effects([withStroke(linewidth=2.0, foreground="white")])
     _drop_clipped(ax, texts)
     figure = ax.get_figure(root=False)
     if figure is not None:

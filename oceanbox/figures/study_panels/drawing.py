@@ -90,5 +90,6 @@ def compose_study(study: StudyData, page: StudyPage) -> Figure:
                 ax = figure.add_subplot(grid[row, column : column + span])
                 set_letter(draw_study_panel(ax, study, page.panels[index]), page.letter(index))
                 column += span
-        figure.align_ylabels()
+        # Beside names of keys or cases, which need much room, others would be torn from their axes.
+        figure.align_ylabels([ax for ax in figure.axes if ax.get_ylabel()])
     return figure

@@ -83,7 +83,7 @@ def configured_log_law(study: StudyData, depth: str, balance: Balance, at: Seque
         f"with H_m and l as configured and nothing fitted: "
         f"root-mean-square misfit {_metres(misfit)} m over the cases in equilibrium."
     )
-    return Law(law, _label("log law, as configured", misfit), _formula(balance), words)
+    return Law(law, _label("log law, configured", misfit), _formula(balance), words)
 
 
 def scale_law(study: StudyData, depth: str, scale: str, at: Sequence[str]) -> Law:

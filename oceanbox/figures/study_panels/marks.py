@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Literal, NamedTuple
 
 import matplotlib as mpl
 import numpy as np
@@ -22,8 +22,22 @@ if TYPE_CHECKING:
     import xarray as xr
     from matplotlib.axes import Axes
 
-__all__ = ["CaseColours", "axis_label", "case_words", "extend_of", "sequence", "show_colours", "varying_number"]
+__all__ = [
+    "MARKERS",
+    "CaseColours",
+    "Look",
+    "axis_label",
+    "case_words",
+    "extend_of",
+    "look_of_place",
+    "sequence",
+    "show_colours",
+    "varying_number",
+]
 
+Dashes = str | tuple[int, tuple[float, ...]]
+
+MARKERS = "osD^vP"
 _TELLABLE = len(LINES)  # lines that a reader can tell apart without an order
 _MOST_PLACES = 2  # on which cases differ; more are not said in a legend
 _TICKS = 8  # numbers beside a colour bar
@@ -82,6 +96,25 @@ class CaseColours:
         divisor = drawn(str(along.name), along.attrs.get("units", "")).divisor
         labels = tuple(f"{place / divisor:.4g}".replace("-", "−") for place in numbers)
         return cls(tuple(colours.values()), labels, axis_label(along))
+
+
+class Look(NamedTuple):
+    """How the cases at one place on an axis are drawn; `label` is '' where a colour bar says what the place is."""
+
+    color: str
+    linestyle: Dashes
+    marker: str
+    label: str
+
+
+def look_of_place(places: Sequence[Place], index: int) -> Look:
+    """Numbers are told apart by colour alone, names also by dashes and marks, for grey print."""
+    place = places[index]
+    colour = CaseColours.of_places(places)[place]
+    if isinstance(place, float):
+        return Look(colour, "solid", MARKERS[0], "")
+    number = list(dict.fromkeys(places)).index(place) % _TELLABLE
+    return Look(colour, LINES[number].linestyle, MARKERS[number], place)
 
 
 def varying_number(cases: Sequence[CaseView]) -> str | None:

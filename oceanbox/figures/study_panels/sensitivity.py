@@ -12,7 +12,7 @@ from oceanbox.errors import UnreadableResult
 from oceanbox.figures.study_options import SensitivityBars
 from oceanbox.figures.study_panels.axes import legend_over
 from oceanbox.figures.study_panels.cases import StudyData
-from oceanbox.figures.study_panels.words import key_words
+from oceanbox.figures.study_panels.words import LABELS, key_words
 from oceanbox.figures.style import GREY, INK, LINES
 
 if TYPE_CHECKING:
@@ -60,7 +60,7 @@ def _draw_indices(ax: Axes, study: StudyData, options: SensitivityBars) -> None:
         )
         _bars(ax, places + shift * _HEIGHT, value, (value - low, high - value), colour, label)
     _label_keys(ax, study, options, order)
-    ax.set_xlabel("Share of the variance (Sobol' index)")
+    ax.set_xlabel(f"{_words(options)}:\nshare of the variance (Sobol' index)")
     legend_over(ax, frame=ax)
 
 
@@ -71,7 +71,11 @@ def _draw_elasticities(ax: Axes, study: StudyData, options: SensitivityBars) -> 
     places = np.arange(order.size, dtype=float)
     _bars(ax, places, value[order], (error, error), LINES[0].color, "")
     _label_keys(ax, study, options, order)
-    ax.set_xlabel("Elasticity (% per %)")
+    ax.set_xlabel(f"{_words(options)}:\nelasticity (% per %)")
+
+
+def _words(options: SensitivityBars) -> str:
+    return LABELS.get(options.scalar, options.scalar)
 
 
 def _bars(ax: Axes, places: Array, value: Array, errors: tuple[Array, Array], colour: str, label: str) -> None:

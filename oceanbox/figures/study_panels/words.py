@@ -79,7 +79,7 @@ LABELS: Final = MappingProxyType(
         "entrainment_shoaling_total": "Entrainment by shoaling",
         "entrainment_prescribed_total": "Prescribed entrainment",
         "transformation_total": "Warm water destroyed",
-        "outcrop_total": "Warm water handed over at the outcrop",
+        "outcrop_total": "Outcropping warm water",
         "exchange_imbalance": "Exchange imbalance",
         "warm_water_volume": "Warm-water volume",
         "heat_content": "Heat content",
@@ -114,7 +114,9 @@ _FIELDS: Final = MappingProxyType(
 # Parts of keys that name a unit: what follows the quantity.
 _UNIT_PARTS: Final = "per m m2 m3 s kg g K K2 W N J Pa PW degC deg degree degrees day days year years h km mm"
 # Last parts of keys that say nothing without the part before.
-_GENERAL: Final = "value scale peak base polar tropical amplitude centre width total rate time"
+_GENERAL: Final = (
+    "value scale peak base polar tropical amplitude centre width total rate time coefficient margin diffusivity"
+)
 
 
 def drawn(name: str, units: str) -> Drawn:
