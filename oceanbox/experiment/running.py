@@ -24,7 +24,6 @@ from oceanbox.experiment.outcome import Ending, Outcome
 from oceanbox.experiment.plan import SECONDS_PER_YEAR, Plan
 from oceanbox.experiment.recorder import Recorder
 from oceanbox.experiment.spinup import SpinUp
-from oceanbox.physics.state import State
 from oceanbox.stepping.limits import step_limits
 
 __all__ = ["Observer", "Progress", "Run"]
@@ -96,6 +95,7 @@ class Run:
             asked = model.setup.config.equilibrium
             tolerance = min(asked.volume_drift_per_decade, asked.heat_drift_per_decade)
             self.spin_up = SpinUp(model, acceleration.memory, acceleration.pace_limit, tolerance)
+        self._good_fields = [np.empty_like(field) for field in (*model.state, *model.memory)]
         self._copy_good_state()
 
     # -- the loop -----------------------------------------------------------------------------------------------------
@@ -115,6 +115,8 @@ class Run:
             self._report()
             if outcome is None and self.observer.checkpoint_due():
                 self.observer.save(self)
+        # Nothing can break any more, and the result needs the room.
+        self._good_fields.clear()
         return outcome
 
     def _next_time(self) -> float:
@@ -285,16 +287,15 @@ class Run:
     # -- keeping the run sound ----------------------------------------------------------------------------------------
 
     def _copy_good_state(self) -> None:
+        """Into arrays made once: on a large grid they are a fifth of all memory."""
         model = self.model
-        self._good_state = State(*(field.copy() for field in model.state))
-        self._good_memory = tuple(field.copy() for field in model.memory)
+        for good, field in zip(self._good_fields, (*model.state, *model.memory), strict=True):
+            good[...] = field
         self._good_clock = (model.clock.epoch, model.clock.dt, model.clock.steps, model.total_steps)
 
     def _rewind(self) -> None:
         model = self.model
-        for field, good in zip(model.state, self._good_state, strict=True):
-            field[...] = good
-        for field, good in zip(model.memory, self._good_memory, strict=True):
+        for good, field in zip(self._good_fields, (*model.state, *model.memory), strict=True):
             field[...] = good
         model.clock.epoch, model.clock.dt, model.clock.steps, model.total_steps = self._good_clock
 

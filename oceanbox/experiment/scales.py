@@ -48,9 +48,11 @@ class Scales:
         return max(self.munk_width, self.stommel_width)
 
 
-# Compute arrays held by a forward-backward model: state, two copies of it, memory and its copy, ledger twice, forcing, scratch.
-ARRAYS_PER_LAYER = 3 * 5 + 2 * 18 + 2 * 22 + 12 + 15
-RECORDED_ARRAYS = 14
+# Arrays of the size of the grid at the end of a run, when it needs most: state, three copies of it, memory of the scheme and its
+# copy, ledger, forcing; moments of seven fields and marks in the ledger; the maps of the result beyond what is freed for them.
+MODEL_ARRAYS = 4 * 5 + 2 * 18 + 22 + 12
+RECORDED_ARRAYS = 2 * 7 + 9
+RESULT_ARRAYS = 54
 
 
 def _wind_has_curl(setup: Setup) -> bool:
@@ -91,5 +93,5 @@ def derive_scales(setup: Setup) -> Scales:
         equator_inside=bool(f_walls[0] < 0.0 < f_walls[1]),
         limits=limits,
         step=config.numerics.step_s or choose_step(limits.smallest, config.numerics.step_safety),
-        memory=8.0 * cells * (ARRAYS_PER_LAYER + RECORDED_ARRAYS),
+        memory=8.0 * cells * (MODEL_ARRAYS + RECORDED_ARRAYS + RESULT_ARRAYS),
     )
