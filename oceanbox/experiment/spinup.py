@@ -36,10 +36,11 @@ CAUTION = 0.3
 SMALL_DRIFT = 0.5
 SMALL_CHANGE = 0.2
 # Spin-up also ends when the change in a cycle has not fallen for so many cycles.  What it has reached is kept if change and true
-# drift have fallen to a share of the first ones, or if the drift is one that counts as equilibrium: an ocean with eddies.
+# drift have fallen to these shares of the first ones; a drift that counts as equilibrium is small enough in any case.
 PATIENCE = 8
 FALLING = 0.9
-WORTH_KEEPING = 0.3
+QUIET = 0.5
+SLOW = 0.1
 
 
 @dataclass
@@ -193,8 +194,8 @@ class SpinUp:
         """End; keep the present state if the ocean has come a good part of the way to rest, else go back to the start."""
         counts = self.counts
         counts.ended = True
-        quiet = bool(counts.changes) and min(counts.changes) < WORTH_KEEPING * counts.first_change
-        slow = self.counts.drift < max(WORTH_KEEPING * counts.first_drift, self.tolerance)
+        quiet = bool(counts.changes) and min(counts.changes) < QUIET * counts.first_change
+        slow = self.counts.drift < max(SLOW * counts.first_drift, self.tolerance)
         if self.pace_limit <= 1.0 or (quiet and slow):
             return f"acceleration helps no further ({reason}): going on plainly"
         self._go_back(self.beginning)

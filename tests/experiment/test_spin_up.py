@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import time
 from pathlib import Path
 from typing import Any
 
@@ -9,7 +10,7 @@ import numpy as np
 import pytest
 
 from oceanbox.budgets.rates import BUDGETS, budget_maps
-from oceanbox.config import Config
+from oceanbox.config import Config, load
 from oceanbox.constants import SECONDS_PER_DAY
 from oceanbox.equilibrium.mixing import Mixing
 from oceanbox.experiment.api import equilibrate
@@ -19,6 +20,8 @@ from oceanbox.experiment.model import Model
 from oceanbox.experiment.spinup import SpinUp
 from oceanbox.physics.state import State
 from tests.building import box_config
+
+CONFIGS = Path(__file__).resolve().parents[2] / "configs"
 
 # A basin small enough to be in equilibrium within seconds of computing, strict enough to compare states.
 SMALL_BASIN: dict[str, Any] = {
@@ -167,6 +170,37 @@ def test_where_every_amount_of_water_has_its_equilibrium_each_run_keeps_its_own(
     finished = equilibrate(_basin(**closed), tmp_path)
     assert "spin-up ended" in finished.result.attrs["history"]
     assert float(finished.result["thickness"].mean()) == pytest.approx(depth, rel=1e-10)
+
+
+def _seconds_of(config: Config, folder: Path) -> float:
+    """Processor seconds to equilibrium of a configuration that is in the end in it."""
+    start = time.process_time()
+    finished = equilibrate(config, folder)
+    assert finished.outcome.ending.value == "equilibrium"
+    return time.process_time() - start
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("name", ["quick", "fresh_water", "prescribed_loss", "reference"])
+def test_acceleration_never_costs_more_than_three_tenths_of_plain_stepping(name: str, tmp_path: Path) -> None:
+    """Every shipped configuration, to equilibrium from its default start."""
+    config = load(CONFIGS / f"{name}.yaml").config
+    equilibrate(config.with_changes({"equilibrium.longest_years": 6.5}), tmp_path / "compile")
+    plain = _seconds_of(config.with_changes({"equilibrium.acceleration": None}), tmp_path / "plain")
+    assert _seconds_of(config, tmp_path / "accelerated") < 1.3 * plain
+
+
+@pytest.mark.slow
+def test_an_ocean_that_never_rests_is_left_to_plain_stepping(tmp_path: Path) -> None:
+    """Constant efficiency 1 oscillates for ever: the run says so and goes on from its start as if nothing had been tried."""
+    changes = {
+        "transformation.efficiency": {"kind": "constant", "value": 1.0},
+        "equilibrium.longest_years": 30.0,
+    }
+    config = load(CONFIGS / "quick.yaml").config.with_changes(changes)
+    finished = equilibrate(config, tmp_path)
+    assert finished.outcome.ending.value == "not in equilibrium"
+    assert "going on plainly from the start" in finished.result.attrs["history"]
 
 
 @pytest.mark.parametrize("branch", [1.0, -1.0])

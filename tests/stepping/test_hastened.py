@@ -63,15 +63,18 @@ def test_the_ledger_books_the_true_step_and_the_residual_is_what_the_pace_added(
     }
     rng = np.random.default_rng(2)
     thickness, theta = rng.uniform(50.0, 70.0, (1, 16, 20)), rng.uniform(5.0, 15.0, (1, 16, 20))
+    velocity_x, velocity_y = rng.normal(0.0, 0.1, (1, 16, 21)), rng.normal(0.0, 0.1, (1, 17, 20))
+    velocity_x[..., [0, -1]] = velocity_y[:, [0, -1]] = 0.0
     true, hastened = box(changes), box(changes)
     for model in (true, hastened):
-        set_state(model, thickness=thickness, theta=theta)
+        set_state(model, thickness=thickness, theta=theta, velocity_x=velocity_x, velocity_y=velocity_y)
     hastened.hasten(PACE_LIMIT, ROSSBY)
     for model in (true, hastened):
         model.advance(1)
     for name, booked in true.ledger._asdict().items():
         assert np.array_equal(booked, getattr(hastened.ledger, name)), name
-    assert np.abs(true.ledger.heat_restoring).max() > 0.0
+    for moved in (true.ledger.heat_restoring, true.ledger.volume_x, true.ledger.heat_advection_y):
+        assert np.abs(moved).max() > 0.0
     maps = [
         budget_maps(model.grid, model.ledger, model.opening, model.state, 1.0, Water(1.0, 1.0))
         for model in (true, hastened)
