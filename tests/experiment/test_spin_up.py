@@ -12,6 +12,7 @@ import pytest
 from oceanbox.budgets.rates import BUDGETS, budget_maps
 from oceanbox.config import Config, load
 from oceanbox.constants import SECONDS_PER_DAY
+from oceanbox.equilibrium import Tolerances
 from oceanbox.equilibrium.mixing import Mixing
 from oceanbox.experiment.api import equilibrate
 from oceanbox.experiment.assembly import assemble_setup
@@ -82,7 +83,7 @@ def test_what_acceleration_added_is_told_and_in_no_budget(tmp_path: Path) -> Non
 def test_what_acceleration_added_accounts_for_every_cubic_metre(tmp_path: Path) -> None:
     """Contents after some cycles = contents at the start + what the books of true steps say + what is recorded as added."""
     model = Model(assemble_setup(_basin()))
-    spin_up = SpinUp(model, memory=4, pace_limit=20.0, tolerance=0.0)
+    spin_up = SpinUp(model, memory=4, pace_limit=20.0, tolerances=Tolerances(0.0, 0.0, 0.0, 0.0))
     steps = round(20.0 * SECONDS_PER_DAY / model.clock.dt)
     start = contents(model)
     booked = {"warm_water_volume": 0.0, "heat_content": 0.0}
