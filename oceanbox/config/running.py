@@ -23,7 +23,7 @@ class Acceleration(Section):
     lead_years: Real = quantity(0.5, "The model time before the first extrapolation.", "year", gt=0.0)
     cycle_years: Real = quantity(0.25, "The model time between extrapolations.", "year", gt=0.0)
     memory: Whole = quantity(8, "The number of earlier cycles an extrapolation uses.", "1", ge=1, le=30)
-    longest_years: Real = quantity(5.0, "The model time after which the run goes on plainly.", "year", gt=0.0)
+    longest_years: Real = quantity(8.0, "The model time after which the run goes on plainly.", "year", gt=0.0)
 
 
 class Equilibrium(Section):

@@ -92,9 +92,7 @@ class Run:
         acceleration = model.setup.config.equilibrium.acceleration
         self.spin_up: SpinUp | None = None
         if acceleration is not None and acceleration.lead_years * SECONDS_PER_YEAR < plan.accelerated_until:
-            asked = model.setup.config.equilibrium
-            tolerance = min(asked.volume_drift_per_decade, asked.heat_drift_per_decade)
-            self.spin_up = SpinUp(model, acceleration.memory, acceleration.pace_limit, tolerance)
+            self.spin_up = SpinUp(model, acceleration.memory, acceleration.pace_limit, self._tolerances())
         self._good_fields = [np.empty_like(field) for field in (*model.state, *model.memory)]
         self._copy_good_state()
 
@@ -250,13 +248,7 @@ class Run:
         now = window_means(self.model, seconds, float(means["warm_water_volume"]), float(means["heat_content"]))
         if self.previous is not None:
             self.drift = drift_between(self.previous, now, asked.window_years)
-            tolerances = Tolerances(
-                asked.volume_drift_per_decade,
-                asked.heat_drift_per_decade,
-                asked.heat_imbalance,
-                asked.exchange_imbalance,
-            )
-            self.held = held(self.drift, tolerances)
+            self.held = held(self.drift, self._tolerances())
             counts.good_windows = counts.good_windows + 1 if all(self.held.values()) else 0
         self.previous = now
         years = self.model.clock.seconds / SECONDS_PER_YEAR
@@ -269,6 +261,15 @@ class Run:
         if not self._is_due(plan.end):
             self.recorder.open_window()
         return None
+
+    def _tolerances(self) -> Tolerances:
+        asked = self.model.setup.config.equilibrium
+        return Tolerances(
+            asked.volume_drift_per_decade,
+            asked.heat_drift_per_decade,
+            asked.heat_imbalance,
+            asked.exchange_imbalance,
+        )
 
     def _measures(self) -> str:
         if self.drift is None:

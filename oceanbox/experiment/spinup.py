@@ -14,8 +14,9 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from oceanbox.equilibrium import Tolerances, drift_between
 from oceanbox.equilibrium.mixing import Mixing
-from oceanbox.experiment.integrals import added_contents
+from oceanbox.experiment.integrals import added_contents, window_means
 from oceanbox.experiment.model import Model
 from oceanbox.grid import HALO
 
@@ -31,7 +32,7 @@ REFUSALS_BORNE = 3
 # How far currents may be from geostrophy while they are slowed (`stepping.hastened.set_pace`), and after a breakdown.
 ROSSBY = 0.5
 CAUTION = 0.3
-# Spin-up ends when the true drift per decade is this share of the one that counts as equilibrium, and the change in a cycle is
+# Spin-up ends when true drift and imbalances are this share of those that count as equilibrium, and the change in a cycle is
 # this share of it: hastened cycles leave from a half to a tenth of what is missing, so a few of them are still missing.
 SMALL_DRIFT = 0.5
 SMALL_CHANGE = 0.2
@@ -78,10 +79,11 @@ def may_be_hastened(model: Model) -> bool:
 class SpinUp:
     """The acceleration of one model, told when a cycle has ended."""
 
-    def __init__(self, model: Model, memory: int, pace_limit: float, tolerance: float) -> None:
-        """``tolerance`` is the relative drift per decade that counts as equilibrium; for the rest see the configuration."""
+    def __init__(self, model: Model, memory: int, pace_limit: float, tolerances: Tolerances) -> None:
+        """``tolerances`` say what counts as equilibrium; for the rest see the configuration."""
         self.model = model
-        self.tolerance = tolerance
+        self.tolerances = tolerances
+        self.tolerance = min(tolerances.volume_per_decade, tolerances.heat_per_decade)
         self.pace_limit = pace_limit if may_be_hastened(model) else 1.0
         self.counts = SpinUpCounts()
         self.mixing = Mixing(memory, self._weights())
@@ -146,13 +148,24 @@ class SpinUp:
         if counts.ended:
             return told
         depth = float(model.thickness.sum(axis=0).mean())
-        if self.counts.drift < SMALL_DRIFT * self.tolerance and change < SMALL_CHANGE * self.tolerance * depth:
+        near = self.counts.drift < SMALL_DRIFT * self.tolerance and change < SMALL_CHANGE * self.tolerance * depth
+        if near and self._is_balanced():
             counts.ended = True
             return told
         recent = counts.changes[-PATIENCE:]
         if len(counts.changes) > PATIENCE and min(recent) > FALLING * min(counts.changes[:-PATIENCE]):
             return self._give_up("the change in a cycle does not fall any more")
         return self._extrapolate(image, after) or told
+
+    def _is_balanced(self) -> bool:
+        """Whether gains and losses of the cycle, as booked, agree to a share of what equilibrium asks for."""
+        seconds = self.model.clock.seconds - self.model.opened_at
+        means = window_means(self.model, seconds, 1.0, 1.0)
+        found, asked = drift_between(means, means, 1.0), self.tolerances
+        return (
+            found.heat_imbalance < SMALL_DRIFT * asked.heat_imbalance
+            and found.exchange_imbalance < SMALL_DRIFT * asked.exchange_imbalance
+        )
 
     def _record_added(self, contents: Array) -> None:
         """Enter (3,) sums over the cells into the counts."""

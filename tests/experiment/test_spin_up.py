@@ -8,16 +8,18 @@ from typing import Any
 
 import numpy as np
 import pytest
+from numpy.typing import NDArray
 
 from oceanbox.budgets.rates import BUDGETS, budget_maps
 from oceanbox.config import Config, load
 from oceanbox.constants import SECONDS_PER_DAY
+from oceanbox.equilibrium import Tolerances
 from oceanbox.equilibrium.mixing import Mixing
 from oceanbox.experiment.api import equilibrate
 from oceanbox.experiment.assembly import assemble_setup
 from oceanbox.experiment.integrals import contents
 from oceanbox.experiment.model import Model
-from oceanbox.experiment.spinup import SpinUp
+from oceanbox.experiment.spinup import ROSSBY, SpinUp
 from oceanbox.physics.state import State
 from tests.building import box_config
 
@@ -82,7 +84,7 @@ def test_what_acceleration_added_is_told_and_in_no_budget(tmp_path: Path) -> Non
 def test_what_acceleration_added_accounts_for_every_cubic_metre(tmp_path: Path) -> None:
     """Contents after some cycles = contents at the start + what the books of true steps say + what is recorded as added."""
     model = Model(assemble_setup(_basin()))
-    spin_up = SpinUp(model, memory=4, pace_limit=20.0, tolerance=0.0)
+    spin_up = SpinUp(model, memory=4, pace_limit=20.0, tolerances=Tolerances(0.0, 0.0, 0.0, 0.0))
     steps = round(20.0 * SECONDS_PER_DAY / model.clock.dt)
     start = contents(model)
     booked = {"warm_water_volume": 0.0, "heat_content": 0.0}
@@ -153,6 +155,42 @@ def test_acceleration_that_does_not_help_is_given_up_and_says_so(
     finished = equilibrate(config, tmp_path)
     history = finished.result.attrs["history"]
     assert "acceleration does not help" in history and "going on plainly from the start" in history
+
+
+def _vector_of(model: Model) -> NDArray[np.float64]:
+    return np.concatenate([content.ravel() for content in model.state])
+
+
+def test_breakdowns_lead_back_to_the_cycle_and_then_to_the_start() -> None:
+    """The first to the state the cycle began with, with more caution; the second to that of the run, and true steps follow."""
+    model = Model(assemble_setup(_basin()))
+    start = _vector_of(model)
+    spin_up = SpinUp(model, memory=4, pace_limit=20.0, tolerances=Tolerances(0.0, 0.0, 0.0, 0.0))
+    model.advance(10)
+    spin_up.end_cycle(0.05)
+    cycle = _vector_of(model)
+    model.advance(10)
+    assert "more caution" in spin_up.survive()
+    assert np.array_equal(_vector_of(model), cycle) and not np.array_equal(cycle, start)
+    assert spin_up.counts.rossby < ROSSBY and not spin_up.counts.ended
+    model.advance(10)
+    assert "from the start" in spin_up.survive()
+    assert np.array_equal(_vector_of(model), start)
+    assert spin_up.counts.ended and spin_up.survive() == ""
+
+
+def test_giving_up_far_from_rest_leads_back_to_the_start() -> None:
+    """When the time is over after a first cycle, in which nothing has fallen, the run starts again where it was."""
+    model = Model(assemble_setup(_basin()))
+    start = _vector_of(model)
+    spin_up = SpinUp(model, memory=4, pace_limit=20.0, tolerances=Tolerances(0.0, 0.0, 0.0, 0.0))
+    for _ in range(2):
+        model.open_books()
+        model.advance(40)
+        spin_up.end_cycle(0.05)
+    assert not np.array_equal(_vector_of(model), start)
+    assert "does not help" in spin_up.run_out()
+    assert np.array_equal(_vector_of(model), start)
 
 
 @pytest.mark.parametrize("depth", [100.0, 150.0])
