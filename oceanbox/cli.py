@@ -113,7 +113,7 @@ def _announce_compilation() -> None:
     from oceanbox.terminal import tell
 
     if not cache_is_warm():
-        tell("compiling the equations for this machine; this happens once and takes up to half a minute")
+        tell("compiling the equations for this machine; this happens once and takes up to a minute")
 
 
 def _report_finished(finished: "Finished") -> int:
