@@ -4,6 +4,7 @@ import math
 
 from oceanbox.constants import DAYS_PER_YEAR, SECONDS_PER_DAY
 from oceanbox.experiment.assembly import Setup
+from oceanbox.experiment.cost import usual_years
 from oceanbox.experiment.model import deepest_expected
 from oceanbox.experiment.scales import Scales
 
@@ -26,7 +27,7 @@ def table(setup: Setup, scales: Scales, seconds_per_step: float) -> str:
     """The lines of the table; ``seconds_per_step`` [s] is the wall time of a step on this machine."""
     limits, config = scales.limits, setup.config
     year = seconds_per_step * scales.steps_per_year
-    years = config.equilibrium.longest_years
+    years, usual = config.equilibrium.longest_years, usual_years(config)
     evolve_years = config.evolve.duration_days / DAYS_PER_YEAR
     pace = 1e9 * seconds_per_step / scales.cells
     rows = [
@@ -45,7 +46,7 @@ def table(setup: Setup, scales: Scales, seconds_per_step: float) -> str:
         ("step", f"{scales.step:.1f} s, {config.numerics.scheme}; {scales.steps_per_year:.0f} steps a year"),
         ("memory", f"{scales.memory / 2**20:.0f} MiB of fields"),
         ("cost on this machine", f"{pace:.0f} ns per cell and step, {_duration(year)} a model year"),
-        ("equilibrate", f"at most {_duration(years * year)} for {years:g} years; 40 years take {_duration(40.0 * year)}"),
+        ("equilibrate", f"at most {_duration(years * year)} for {years:g} years; {usual:g} years take {_duration(usual * year)}"),
         ("evolve", f"{_duration(evolve_years * year)} for {config.evolve.duration_days:g} days"),
     ]  # fmt: skip
     width = max(len(name) for name, _ in rows)

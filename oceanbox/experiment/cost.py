@@ -6,10 +6,11 @@ import time
 from pathlib import Path
 
 from oceanbox.compiling import CACHE_FOLDER
+from oceanbox.config import Config
 from oceanbox.experiment.assembly import Setup
 from oceanbox.experiment.model import Model
 
-__all__ = ["seconds_per_step"]
+__all__ = ["seconds_per_step", "usual_years"]
 
 # Timing goes on until this much processor time is spent, s.
 TIMED_SECONDS = 0.5
@@ -63,3 +64,13 @@ def seconds_per_step(setup: Setup) -> float:
         with contextlib.suppress(OSError):
             _calibration_file().write_text(json.dumps(known, indent=1), encoding="utf-8")
     return known[key]
+
+
+# Model years to equilibrium of the middle one of the shipped configurations, with and without acceleration.
+USUAL_YEARS, USUAL_YEARS_PLAIN = 10.0, 40.0
+
+
+def usual_years(config: Config) -> float:
+    """Model years after which a run is taken to be in equilibrium before anything better is known."""
+    usual = USUAL_YEARS if config.equilibrium.acceleration is not None else USUAL_YEARS_PLAIN
+    return min(usual, config.equilibrium.longest_years)

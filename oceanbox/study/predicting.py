@@ -14,9 +14,6 @@ from oceanbox.study.status import CaseStatus, State, status_of
 
 __all__ = ["Forecast", "forecast"]
 
-USUAL_YEARS = 40.0
-"""Model years after which a case is taken to be in equilibrium, where no case of the study tells better."""
-
 
 @dataclass(frozen=True)
 class Forecast:
@@ -49,23 +46,27 @@ def forecast(cases: Sequence[Case], into: Path) -> Forecast:
         each = [mean] * len(cases)
         basis = f"the mean of {len(known)} cases that are done"
     else:
+        from oceanbox.experiment.cost import usual_years
+
         costs: dict[str, float] = {}
         each = [_timed(case, costs) for case in cases]
-        equilibrate = any(case.command == "equilibrate" for case in cases)
-        basis = "timing a few steps" + (f", if equilibrium takes {USUAL_YEARS:g} model years" if equilibrate else "")
+        searched = [usual_years(case.config) for case in cases if case.command == "equilibrate"]
+        basis = "timing a few steps" + (f", if equilibrium takes {max(searched):g} model years" if searched else "")
     left = [0.0 if status.finished else cost for status, cost in zip(statuses, each, strict=True)]
     return Forecast(tuple(cases), tuple(statuses), tuple(left), basis)
 
 
 def _timed(case: Case, costs: dict[str, float]) -> float:
     """Wall time of a case [s]; `costs` keeps that of a model year of each kind of setup."""
+    from oceanbox.experiment.cost import usual_years
+
     config = case.config
     key = f"{config.basin!r} {config.numerics!r} {config.motion!r}"
     if key not in costs:
         costs[key] = _year(config)
     if case.command == "evolve":
         return costs[key] * config.evolve.duration_days / DAYS_PER_YEAR
-    return costs[key] * min(USUAL_YEARS, config.equilibrium.longest_years)
+    return costs[key] * usual_years(config)
 
 
 def _year(config: Config) -> float:
