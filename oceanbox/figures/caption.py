@@ -21,6 +21,7 @@ from oceanbox.figures.options import (
     TemperatureMap,
     ThermoclineMap,
 )
+from oceanbox.figures.shortened import SHORTENED, was_shortened
 from oceanbox.output.provenance import IDENTITY_ATTRIBUTE, OUTCOME_ATTRIBUTE
 
 if TYPE_CHECKING:
@@ -93,7 +94,7 @@ def sentence(dataset: xr.Dataset, panel: Panel) -> str:
                 "Approach to equilibrium: thermocline depth on the equator (western eighth, mean, eastern eighth; the "
                 "basin mean where there is no equator), warm-water volume, and net surface heat flux relative to the sum of "
                 "its gains and losses. Shading: the averaging window."
-            )
+            ) + (f" {SHORTENED}" if was_shortened(dataset.attrs) else "")
 
 
 def _edge(dataset: xr.Dataset) -> str:

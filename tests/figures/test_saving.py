@@ -16,8 +16,10 @@ from matplotlib.text import Text
 
 from oceanbox.diagnostics import summarise
 from oceanbox.figures import Page, draw, loads_page
-from oceanbox.figures.caption import caption, run_name
+from oceanbox.figures.caption import caption, run_name, sentence
 from oceanbox.figures.drawing import compose
+from oceanbox.figures.options import Approach
+from oceanbox.figures.shortened import SHORTENED
 from oceanbox.figures.style import RC
 from oceanbox.output.files import write_dataset
 from tests.synthetic import CONFIG, synthetic_means, synthetic_result
@@ -164,6 +166,15 @@ def test_the_caption_states_run_window_identity_outcome_and_cautions(result: xr.
     assert "Not for forecasts of the real ocean" in text
     assert "2 K colder than the equatorial warm pool" in text
     assert [f"({letter})" in text for letter in "abcdef"] == [True] * 6
+
+
+def test_the_caption_of_an_approach_says_that_it_was_shortened_and_only_then(result: xr.Dataset) -> None:
+    """Time before the windows that are judged is then not what the ocean would take."""
+    shortened = {"oceanbox_config": "equilibrium: {acceleration: {memory: 8}}", "oceanbox_command": "equilibrate"}
+    assert SHORTENED in sentence(result.assign_attrs(shortened), Approach())
+    assert SHORTENED not in sentence(result.assign_attrs(shortened | {"oceanbox_command": "evolve"}), Approach())
+    plain = shortened | {"oceanbox_config": "equilibrium: {acceleration: null}"}
+    assert SHORTENED not in sentence(result.assign_attrs(plain), Approach())
 
 
 def test_the_caption_says_so_where_there_is_no_cold_tongue() -> None:

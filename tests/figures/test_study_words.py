@@ -21,7 +21,7 @@ from oceanbox.names import lookup
 from tests.figures.test_study_page import page_of
 from tests.synthetic_study import MEASURE, axes_study
 
-STEPS = "extrapolations towards equilibrium"
+STEPS = "hastened steps and extrapolations"
 
 
 def with_attributes(study: StudyData, **attributes: str) -> StudyData:

@@ -10,6 +10,7 @@ import yaml
 
 from oceanbox import names
 from oceanbox.diagnostics.theory_inputs import THEORY_INPUTS
+from oceanbox.figures.shortened import SHORTENED
 from oceanbox.figures.study_options import (
     Branches,
     BudgetBars,
@@ -181,7 +182,7 @@ def _steps(study: StudyData, panel: CasePanelOptions) -> str:
     accelerated = [case for case in study.cases(panel.at, panel.cases) if case.accelerated]
     if not accelerated:
         return ""
-    return " Their steps are extrapolations towards equilibrium, which end before the first window that is judged."
+    return f" {SHORTENED}"
 
 
 def _maps(study: StudyData, panel: CaseMaps) -> str:

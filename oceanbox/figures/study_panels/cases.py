@@ -10,14 +10,13 @@ from typing import Any, NamedTuple
 
 import numpy as np
 import xarray as xr
-import yaml
 from numpy.typing import NDArray
 
 from oceanbox import names
 from oceanbox.diagnostics.theory_inputs import THEORY_INPUTS, theory_inputs
 from oceanbox.errors import UnreadableResult
+from oceanbox.figures.shortened import was_shortened
 from oceanbox.output.files import read_dataset
-from oceanbox.output.provenance import CONFIG_ATTRIBUTE
 
 __all__ = ["CaseView", "Counts", "Place", "StudyData", "open_study"]
 
@@ -62,11 +61,8 @@ class CaseView:
 
     @property
     def accelerated(self) -> bool:
-        """Whether the way to its equilibrium was shortened by extrapolation, by the configuration in its result."""
-        attributes = self.read().attrs
-        tree = yaml.safe_load(str(attributes.get(CONFIG_ATTRIBUTE, ""))) or {}
-        shortened = (tree.get("equilibrium") or {}).get("acceleration") is not None
-        return shortened and attributes.get("oceanbox_command") == "equilibrate"
+        """Whether the way to its equilibrium was shortened, by the configuration in its result."""
+        return was_shortened(self.read().attrs)
 
 
 class Counts(NamedTuple):
