@@ -4,7 +4,7 @@ import math
 
 from oceanbox.constants import DAYS_PER_YEAR, SECONDS_PER_DAY
 from oceanbox.experiment.assembly import Setup
-from oceanbox.experiment.cost import usual_years
+from oceanbox.experiment.cost import START_AND_END, usual_years
 from oceanbox.experiment.model import deepest_expected
 from oceanbox.experiment.scales import Scales
 
@@ -46,8 +46,8 @@ def table(setup: Setup, scales: Scales, seconds_per_step: float) -> str:
         ("step", f"{scales.step:.1f} s, {config.numerics.scheme}; {scales.steps_per_year:.0f} steps a year"),
         ("memory", f"{scales.memory / 2**20:.0f} MiB of fields"),
         ("cost on this machine", f"{pace:.0f} ns per cell and step, {_duration(year)} a model year"),
-        ("equilibrate", f"at most {_duration(years * year)} for {years:g} years; {usual:g} years take {_duration(usual * year)}"),
-        ("evolve", f"{_duration(evolve_years * year)} for {config.evolve.duration_days:g} days"),
+        ("equilibrate", f"at most {_duration(years * year)} for {years:g} years; {usual:g} years take {_duration(START_AND_END + usual * year)}"),
+        ("evolve", f"{_duration(START_AND_END + evolve_years * year)} for {config.evolve.duration_days:g} days"),
     ]  # fmt: skip
     width = max(len(name) for name, _ in rows)
     return "\n".join(f"{name:<{width}}  {value}" for name, value in rows)
