@@ -30,6 +30,7 @@ def table(setup: Setup, scales: Scales, seconds_per_step: float) -> str:
     years, usual = config.equilibrium.longest_years, usual_years(config)
     evolve_years = config.evolve.duration_days / DAYS_PER_YEAR
     pace = 1e9 * seconds_per_step / scales.cells
+    usually = _duration(START_AND_END + usual * year)
     rows = [
         ("grid", f"{setup.grid.nx} x {setup.grid.ny} cells of {scales.dx / 1e3:g} km x {scales.dy / 1e3:g} km"),
         ("layer at the start", f"{scales.thickness:.1f} m thick, reduced gravity up to {scales.reduced_gravity:.4f} m s-2"),
@@ -46,7 +47,7 @@ def table(setup: Setup, scales: Scales, seconds_per_step: float) -> str:
         ("step", f"{scales.step:.1f} s, {config.numerics.scheme}; {scales.steps_per_year:.0f} steps a year"),
         ("memory", f"{scales.memory / 2**20:.0f} MiB of fields"),
         ("cost on this machine", f"{pace:.0f} ns per cell and step, {_duration(year)} a model year"),
-        ("equilibrate", f"at most {_duration(years * year)} for {years:g} years; {usual:g} years take {_duration(START_AND_END + usual * year)}"),
+        ("equilibrate", f"at most {_duration(years * year)} for {years:g} years; {usual:g} years take {usually}"),
         ("evolve", f"{_duration(START_AND_END + evolve_years * year)} for {config.evolve.duration_days:g} days"),
     ]  # fmt: skip
     width = max(len(name) for name, _ in rows)
