@@ -68,7 +68,8 @@ class _LogLines:
     def __call__(self, progress: "Progress") -> None:
         now = time.monotonic()
         if self._from is None:
-            self._from = progress.days
+            # The first report comes after the equations have been compiled, which says nothing about the pace.
+            self._from, self._start = progress.days, time.monotonic()
         if progress.note != self._note:
             self._note = progress.note
             tell(progress.note)
@@ -91,7 +92,8 @@ class _LiveLine:
 
     def __call__(self, progress: "Progress") -> None:
         if self._from is None:
-            self._from = progress.days
+            # The first report comes after the equations have been compiled, which says nothing about the pace.
+            self._from, self._start = progress.days, time.monotonic()
         if progress.note != self._note:
             self._note = progress.note
             self._bar.console.print(progress.note)
