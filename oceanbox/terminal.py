@@ -69,7 +69,7 @@ class _LogLines:
         now = time.monotonic()
         if self._from is None:
             # The first report comes after the equations have been compiled, which says nothing about the pace.
-            self._from, self._start = progress.days, time.monotonic()
+            self._from, self._start = progress.days, now
         if progress.note != self._note:
             self._note = progress.note
             tell(progress.note)
