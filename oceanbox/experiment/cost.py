@@ -4,6 +4,7 @@ import contextlib
 import json
 import time
 from collections.abc import Callable
+from functools import partial
 from pathlib import Path
 
 from oceanbox.compiling import CACHE_FOLDER
@@ -52,7 +53,7 @@ def _measure(setup: Setup) -> float:
     model.advance(FIRST_STEPS)
     best, spent, steps = float("inf"), 0.0, 10
     while spent < TIMED_SECONDS:
-        took = _best(lambda steps=steps: model.advance(steps), 1)  # type: ignore[misc]
+        took = _best(partial(model.advance, steps), 1)
         best = min(best, took / steps)
         spent += took
         steps = max(steps, int(0.05 * TIMED_SECONDS / best) + 1)
